@@ -1,0 +1,1 @@
+export declare const bundleWorkers: (options: { root: string; outdir: string }) => Promise<void>

@@ -1,0 +1,5 @@
+export * from './accounts'
+export * from './groups'
+export * from './parameter-sets'
+export * from './runs'
+export * from './measurements'

@@ -1,0 +1,118 @@
+import { z } from 'zod'
+import { limits } from '../utils/limits'
+import { quantities } from './quantities'
+import { quantitySchema } from './quantity'
+
+const q = quantitySchema
+
+export const cutoffShapes = ['gaussian', 'exponential'] as const
+
+/** J(w) = pi a w^p w_c^(1-p) exp(-(w/w_c)^q), q = 2 for the Gaussian and 1 for the exponential cutoff. */
+export const PowerLawTermSchema = z.strictObject({
+  kind: z.literal('powerLaw'),
+  couplingStrength: q(quantities.couplingStrength),
+  exponent: q(quantities.exponent),
+  cutoffEnergyMeV: q(quantities.cutoffEnergyMeV),
+  cutoffShape: z.enum(cutoffShapes, { error: 'expected the cutoff shape "gaussian" or "exponential"' }),
+})
+
+/** Further bath kinds join this union; the engine dispatches on `kind`. */
+export const BathTermSchema = z.discriminatedUnion('kind', [PowerLawTermSchema], {
+  error: 'expected a bath term of kind "powerLaw"',
+})
+
+export const ModeSchema = z.strictObject({
+  label: z.string().max(limits.nameLength).default(''),
+  energyMeV: q(quantities.modeEnergyMeV),
+  huangRhys: q(quantities.huangRhys),
+})
+
+export const LaserSchema = z.strictObject({
+  centerMeV: q(quantities.laserCenterMeV),
+  fwhmMeV: q(quantities.laserFwhmMeV),
+})
+
+const gridSide = (max: number) =>
+  z
+    .int({ error: `expected a whole number of samples, 16 to ${max}` })
+    .gte(16, { error: `expected at least 16 samples` })
+    .lte(max, { error: `expected at most ${max} samples` })
+
+/** Overrides of the grids that otherwise follow from the widths. Absent fields are chosen by the engine and shown. */
+export const GridOverrideSchema = z.strictObject({
+  linearTimeStepPs: q(quantities.timeStepPs).optional(),
+  linearSamples: gridSide(limits.linearSamples).optional(),
+  mapTimeStepPs: q(quantities.timeStepPs).optional(),
+  mapSamples: gridSide(limits.mapSamples).optional(),
+})
+
+const uniqueAscending = (what: string) => (values: number[], context: z.core.$RefinementCtx<number[]>) => {
+  values.forEach((value, index) => {
+    const before = values[index - 1]
+    if (before !== undefined && !(value > before)) {
+      context.addIssue({
+        code: 'custom',
+        path: [index],
+        message: `expected ${what} in ascending order without repeats; found ${value} after ${before}`,
+        input: value,
+      })
+    }
+  })
+}
+
+/**
+ * A parameter set: the one definition of the form, the route bodies, the stored version, the job and the downloaded
+ * file. Field names carry their unit. Defaults make a short file complete, so that the hash is always taken over the
+ * complete set.
+ */
+export const ParameterSetSchema = z
+  .strictObject({
+    zeroPhononEnergyMeV: q(quantities.zeroPhononEnergyMeV),
+    bath: z.array(BathTermSchema).max(limits.bathTerms).default([]),
+    modes: z.array(ModeSchema).max(limits.modes).default([]),
+    zeroPhononFwhmMeV: q(quantities.zeroPhononFwhmMeV).default(0),
+    acousticBroadeningMeVPerK: q(quantities.acousticBroadeningMeVPerK).default(0),
+    opticalBroadeningMeV: q(quantities.opticalBroadeningMeV).default(0),
+    opticalPhononEnergyMeV: q(quantities.opticalPhononEnergyMeV).optional(),
+    populationLifetimePs: q(quantities.populationLifetimePs).optional(),
+    ensembleFwhmMeV: q(quantities.ensembleFwhmMeV).default(0),
+    laser: LaserSchema.optional(),
+    temperaturesK: z
+      .array(q(quantities.temperatureK))
+      .min(1, { error: 'expected at least one temperature' })
+      .max(limits.temperatures, { error: `expected at most ${limits.temperatures} temperatures` })
+      .superRefine(uniqueAscending('temperatures')),
+    waitingTimesPs: z
+      .array(q(quantities.waitingTimePs))
+      .min(1, { error: 'expected at least one waiting time' })
+      .max(limits.waitingTimes, { error: `expected at most ${limits.waitingTimes} waiting times` })
+      .superRefine(uniqueAscending('waiting times')),
+    grid: GridOverrideSchema.optional(),
+  })
+  .superRefine((set, context) => {
+    if (set.opticalBroadeningMeV > 0 && set.opticalPhononEnergyMeV === undefined) {
+      context.addIssue({
+        code: 'custom',
+        path: ['opticalPhononEnergyMeV'],
+        message: 'expected an optical-phonon energy, because an optical-phonon broadening is given; found nothing',
+        input: undefined,
+      })
+    }
+    const maps = set.temperaturesK.length * set.waitingTimesPs.length
+    if (maps > limits.mapsPerRun) {
+      context.addIssue({
+        code: 'custom',
+        path: ['waitingTimesPs'],
+        message: `expected at most ${limits.mapsPerRun} maps a run; found ${set.temperaturesK.length} temperatures x ${set.waitingTimesPs.length} waiting times = ${maps}`,
+        input: set.waitingTimesPs,
+      })
+    }
+  })
+
+export type PowerLawTerm = z.infer<typeof PowerLawTermSchema>
+export type BathTerm = z.infer<typeof BathTermSchema>
+export type Mode = z.infer<typeof ModeSchema>
+export type Laser = z.infer<typeof LaserSchema>
+export type GridOverride = z.infer<typeof GridOverrideSchema>
+export type ParameterSet = z.infer<typeof ParameterSetSchema>
+export type ParameterSetInput = z.input<typeof ParameterSetSchema>

@@ -1,0 +1,21 @@
+/** Limits that the form, the server and the worker all keep. One place, so that a message can always name the number. */
+export const limits = {
+  /** Time samples of a linear spectrum. */
+  linearSamples: 2 ** 20,
+  /** Time samples along one side of a two-dimensional map. */
+  mapSamples: 4096,
+  /** Maps of one run: temperatures times waiting times. */
+  mapsPerRun: 256,
+  temperatures: 64,
+  waitingTimes: 256,
+  modes: 64,
+  bathTerms: 16,
+  /** Bytes of one uploaded measurement file. */
+  uploadBytes: 64 * 1024 * 1024,
+  /** Bytes of an ordinary JSON body. */
+  jsonBytes: 1024 * 1024,
+  nameLength: 200,
+  noteLength: 4000,
+  passwordMin: 15,
+  passwordMax: 256,
+} as const

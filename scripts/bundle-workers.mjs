@@ -9,7 +9,9 @@ import { build } from 'esbuild'
  */
 export const bundleWorkers = async ({ root, outdir }) => {
   const folder = join(root, 'workers')
-  const entries = existsSync(folder) ? readdirSync(folder).filter((name) => name.endsWith('.ts') && !name.endsWith('.d.ts')) : []
+  const entries = existsSync(folder)
+    ? readdirSync(folder).filter((name) => name.endsWith('.ts') && !name.endsWith('.d.ts'))
+    : []
   if (entries.length === 0) return
   await build({
     entryPoints: entries.map((name) => join(folder, name)),

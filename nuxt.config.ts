@@ -1,4 +1,5 @@
 import { fileURLToPath } from 'node:url'
+import Icons from 'unplugin-icons/vite'
 
 const here = (path: string) => fileURLToPath(new URL(path, import.meta.url))
 
@@ -48,6 +49,10 @@ export default defineNuxtConfig({
     strict: true,
     tsConfig: { compilerOptions: { noUncheckedIndexedAccess: true } },
     nodeTsConfig: { include: ['../scripts/**/*.ts', '../drizzle.config.ts', '../vitest.config.ts'] },
+  },
+  vite: {
+    plugins: [Icons({ compiler: 'vue3', autoInstall: false })],
+    worker: { format: 'es' },
   },
   alias: { '#engine': here('./shared/engine') },
   experimental: { payloadExtraction: false },

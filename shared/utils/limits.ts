@@ -12,6 +12,14 @@ export const limits = {
   bathTerms: 16,
   /** Bytes of one uploaded measurement file. */
   uploadBytes: 64 * 1024 * 1024,
+  /** Files of one group, and their bytes together. */
+  groupFiles: 5000,
+  groupFileBytes: 8 * 1024 ** 3,
+  /** Uploads that one account may have running at once in one server process. */
+  uploadsAtOnce: 8,
+  /** Points of one stored measurement, and columns of its file. */
+  measurementPoints: 200_000,
+  tableColumns: 1000,
   /** Bytes of an ordinary JSON body. */
   jsonBytes: 1024 * 1024,
   nameLength: 200,

@@ -1,0 +1,22 @@
+/**
+ * What every kind of continuous bath hands to the engine: a spectral density on angular frequencies, with the few facts
+ * about it that quadrature and limits need. Frequencies in rad/ps; J in rad/ps (so that hbar J is an energy).
+ */
+
+export interface Continuum {
+  /** J(w) for w > 0. */
+  density: (frequency: number) => number
+  /** J(w) -> coefficient w^exponent for w -> 0. */
+  low: { exponent: number; coefficient: number }
+  /** Below this frequency `low` is J(w) to a relative 1e-7 or better at 1e-3 of it, falling at least linearly. */
+  lowScale: number
+  /** Above this frequency J contributes nothing at working precision. */
+  upper: number
+  /** Widest panel on which 20 Legendre polynomials represent J to rounding, wherever panels below are halved towards 0. */
+  widestPanel: number
+  /** Frequencies at which J or one of its derivatives jumps (table points); ascending. */
+  breaks?: Float64Array
+}
+
+/** g0 of one term at one time, written to out[0] (real) and out[1] (imaginary). */
+export type PointBroadening = (timePs: number, out: Float64Array) => void

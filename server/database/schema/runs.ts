@@ -1,3 +1,4 @@
+import { sql } from 'drizzle-orm'
 import {
   boolean,
   customType,
@@ -82,7 +83,12 @@ export const runs = pgTable(
     /** 0 to 1, never falls within an attempt. */
     progress: doublePrecision('progress').notNull().default(0),
     secondsLeft: doublePrecision('seconds_left'),
+    /** Rises with every start; the fencing token of results. */
     attempt: integer('attempt').notNull().default(0),
+    /** Attempts whose worker died. Handing a run back at a shutdown does not count. */
+    losses: integer('losses').notNull().default(0),
+    /** The waiting or active entry of the queue. */
+    jobId: uuid('job_id'),
     cancelRequested: boolean('cancel_requested').notNull().default(false),
     failure: jsonb('failure').$type<{ code: string; message: string }>(),
     resultId: uuid('result_id').references(() => results.id),
@@ -94,9 +100,15 @@ export const runs = pgTable(
     finishedAt: instant('finished_at'),
     /** Milliseconds of computation of the attempt that finished. */
     computeMs: doublePrecision('compute_ms'),
+    /** Last change of state or progress; event streams resume from it. */
+    changedAt: instant('changed_at').notNull().defaultNow(),
   },
   (table) => [
     index('runs_group_queued_index').on(table.groupId, table.queuedAt),
+    index('runs_group_changed_index').on(table.groupId, table.changedAt),
+    index('runs_group_unfinished_index')
+      .on(table.groupId, table.inputHash)
+      .where(sql`${table.state} in ('queued', 'running')`),
     index('runs_set_version_index').on(table.setVersionId),
     groupPolicy('runs'),
   ],
@@ -114,4 +126,18 @@ export const runAttempts = pgTable('run_attempts', {
   workerId: text('worker_id').notNull(),
   startedAt: instant('started_at').notNull().defaultNow(),
   heartbeatAt: instant('heartbeat_at').notNull().defaultNow(),
+})
+
+/**
+ * Turns at the queue, so that groups take turns however many runs one of them queues. A run gets the turn after its
+ * group's last one, but never an earlier turn than the one being served; the queue serves the lowest turn first.
+ */
+export const queueTurns = pgTable('queue_turns', {
+  groupId: uuid('group_id')
+    .primaryKey()
+    .references(() => groups.id, { onDelete: 'cascade' }),
+  /** Turn given to the run that this group queued last. */
+  queuedTurn: integer('queued_turn').notNull(),
+  /** Highest turn of this group that was served. */
+  servedTurn: integer('served_turn').notNull().default(0),
 })

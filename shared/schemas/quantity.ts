@@ -14,9 +14,14 @@ export interface Quantity {
   max: number
   /** True where `min` itself is not allowed (an exponent of 0, for instance). */
   exclusiveMin?: boolean
+  /** True for the energy of a photon, which may also be typed as a vacuum wavelength. */
+  photonEnergy?: boolean
   /** One line in place: what the number means. */
   meaning: string
 }
+
+/** Whether a wavelength may stand for this quantity. */
+export const isPhotonEnergy = (quantity: Quantity): boolean => quantity.photonEnergy === true
 
 const formatBound = (value: number): string =>
   Math.abs(value) >= 1e6 || (value !== 0 && Math.abs(value) < 1e-3) ? value.toExponential() : String(value)

@@ -30,6 +30,12 @@ export default defineNuxtConfig({
   },
   imports: { scan: true },
   components: [{ path: '~/components', pathPrefix: false }],
+  // The page keeps its own session store over GET /api/session; the module's endpoint is not built at all (see hooks).
+  // OWASP's cost for scrypt. A hash holds 128 * N * r = 128 MiB while it runs, hence the raised ceiling.
+  auth: {
+    loadStrategy: 'none',
+    hash: { scrypt: { cost: 131072, blockSize: 8, parallelization: 1, maxMemory: 160 * 1024 * 1024 } },
+  },
   runtimeConfig: {
     databaseUrl: '',
     /** Base address for links; never taken from the Host header. */
@@ -39,9 +45,18 @@ export default defineNuxtConfig({
     queue: 'inline',
     /** Proxies between the clients and this process whose X-Forwarded-For entries are trusted, counted from the right. */
     trustedProxies: 0,
-    session: { name: 'linewright', password: '', sessionHeader: false, cookie: { secure: true, sameSite: 'lax' } },
+    /** The session password before the present one; set it while changing secrets, so that nobody is signed out. */
+    sessionPreviousPassword: '',
+    /** Seconds after which a sealed cookie is refused whatever the database says: the absolute limit of a session. */
+    session: {
+      password: '',
+      maxAge: 30 * 24 * 3600,
+      sessionHeader: false,
+      cookie: { secure: true, sameSite: 'lax', httpOnly: true, path: '/' },
+    },
   },
   nitro: {
+    errorHandler: '~~/server/error-handler.ts',
     typescript: { tsConfig: { include: ['../workers/**/*', '../server/**/*', '../shared/**/*'] } },
     sourceMap: false,
   },
@@ -53,6 +68,12 @@ export default defineNuxtConfig({
   vite: {
     plugins: [Icons({ compiler: 'vue3', autoInstall: false })],
     worker: { format: 'es' },
+  },
+  hooks: {
+    // nuxt-auth-utils brings GET and DELETE /api/_auth/session. Sessions have one entrance here: /api/session.
+    'nitro:config': (config) => {
+      config.handlers = config.handlers?.filter((handler) => handler.route !== '/api/_auth/session')
+    },
   },
   alias: { '#engine': here('./shared/engine') },
   experimental: { payloadExtraction: false },

@@ -15,13 +15,19 @@ export class AppError extends Error {
   readonly code: ErrorCode
   readonly detail: string
   readonly issues: Issue[]
+  /** Sent as Retry-After where waiting helps. */
+  readonly retryAfterSeconds: number | undefined
 
-  constructor(code: ErrorCode, options: { detail?: string; issues?: Issue[]; cause?: unknown } = {}) {
+  constructor(
+    code: ErrorCode,
+    options: { detail?: string; issues?: Issue[]; retryAfterSeconds?: number; cause?: unknown } = {},
+  ) {
     super(`${code}: ${options.detail ?? errorCodes[code].title}`, { cause: options.cause })
     this.name = 'AppError'
     this.code = code
     this.detail = options.detail ?? errorCodes[code].title
     this.issues = options.issues ?? []
+    this.retryAfterSeconds = options.retryAfterSeconds
   }
 
   get status(): number {

@@ -12,6 +12,7 @@ export const errorCodes = {
   'session/throttled': { status: 429, title: 'Too many attempts; wait before the next one.' },
   'session/confirm-password': { status: 403, title: 'Confirm your password first.' },
   'account/password-common': { status: 422, title: 'This password is on the list of commonly used ones.' },
+  'account/email-taken': { status: 409, title: 'There is already an account of this e-mail address.' },
   'group/role': { status: 403, title: 'Your role in this group does not allow this.' },
   'object/name-taken': { status: 409, title: 'The group already has an object of this name.' },
   'object/version-conflict': { status: 409, title: 'Someone saved a newer version in the meantime.' },

@@ -1,0 +1,65 @@
+import type { H3Event } from 'h3'
+import { parse as parseJson } from 'secure-json-parse'
+import { AppError, type Issue } from '../../shared/errors/app-error'
+
+const tooLarge = (limit: number) =>
+  new AppError('input/too-large', { detail: `This address takes at most ${limit} bytes; more were sent.` })
+
+/** Whole body, counted while it arrives: a length that is missing or wrong changes nothing. */
+export const readLimited = async (event: H3Event, limit: number): Promise<Buffer> => {
+  const request = event.node.req
+  if (Number(request.headers['content-length'] ?? 0) > limit) throw tooLarge(limit)
+  const chunks: Buffer[] = []
+  let length = 0
+  for await (const chunk of request as AsyncIterable<Buffer>) {
+    length += chunk.length
+    if (length > limit) throw tooLarge(limit)
+    chunks.push(chunk)
+  }
+  return Buffer.concat(chunks, length)
+}
+
+/** The media type itself, without parameters, in lower case. */
+export const mediaTypeOf = (event: H3Event): string =>
+  (event.node.req.headers['content-type'] ?? '').split(';', 1)[0]?.trim().toLowerCase() ?? ''
+
+export const requireMediaType = (event: H3Event, expected: string): void => {
+  const found = mediaTypeOf(event)
+  if (found === expected) return
+  throw new AppError('input/media-type', {
+    detail: `Expected the content type ${expected}; found ${found ? found.slice(0, 80) : 'none'}.`,
+  })
+}
+
+/** JSON as the standard has it: UTF-8, no `__proto__` or `constructor.prototype` keys. */
+export const parseBody = (bytes: Buffer): unknown => {
+  let text: string
+  try {
+    text = new TextDecoder('utf-8', { fatal: true }).decode(bytes)
+  } catch {
+    throw new AppError('input/malformed', { detail: 'Expected JSON in UTF-8; found bytes that are not UTF-8.' })
+  }
+  if (text.trim() === '') throw new AppError('input/malformed', { detail: 'Expected a JSON body; found an empty one.' })
+  try {
+    return parseJson(text, { protoAction: 'error', constructorAction: 'error' })
+  } catch (error) {
+    const reason = error instanceof Error ? error.message.slice(0, 200) : 'unreadable'
+    throw new AppError('input/malformed', { detail: `Expected JSON; ${reason}` })
+  }
+}
+
+/**
+ * PostgreSQL can store neither NUL nor half a surrogate pair, in text or in jsonb. Found here, such a text is answered
+ * with its place instead of a database error. Keys named in `unstored` (passwords) never reach a text column.
+ */
+export const findUnstorableText = (value: unknown, unstored: readonly string[], path: Issue['path'] = []): Issue[] => {
+  if (typeof value === 'string') {
+    if (!value.includes('\0') && value.isWellFormed()) return []
+    return [{ path, message: 'expected text without NUL characters and broken surrogate pairs; found one' }]
+  }
+  if (Array.isArray(value)) return value.flatMap((item, index) => findUnstorableText(item, unstored, [...path, index]))
+  if (typeof value !== 'object' || value === null) return []
+  return Object.entries(value).flatMap(([key, item]) =>
+    unstored.includes(key) ? [] : findUnstorableText(item, unstored, [...path, key]),
+  )
+}

@@ -13,7 +13,7 @@
  * Cost: about 0.2 us per panel and time. Accuracy: 1e-13 relative to max(1, |g0|) for exponents from 0.5,
  * (tests/engine/line-broadening.spec.ts); the tail of the Legendre coefficients gives the error estimate.
  */
-import type { Continuum } from './bath/continuum'
+import type { Continuum, DensityIntegrals } from './bath/continuum'
 import { gaussLegendre, legendreAnalysis } from './gauss-legendre'
 import { sphericalBessel } from './spherical-bessel'
 
@@ -27,6 +27,7 @@ export interface FrequencyPanels {
   addAt: (timePs: number, out: Float64Array) => void
   /** Largest omitted Legendre coefficient, as a fraction of the largest kept one. */
   errorEstimate: number
+  integrals: DensityIntegrals
 }
 
 /** Ascending panel edges from `lowest` to the upper end: doubling, no wider than allowed, with the breaks as edges. */
@@ -156,5 +157,20 @@ export const buildFrequencyPanels = (continuum: Continuum, th: number, longestPs
     out[0]! += re
     out[1]! += im
   }
-  return { addAt, errorEstimate: largest > 0 ? omitted / largest : 0 }
+
+  const last = count * SERIES_TERMS
+  // Int f_T below the first panel converges for p > 2, at T = 0 for p > 1; else Re g0 grows without bound.
+  const excess = low.exponent - (th > 0 ? 2 : 1)
+  let plateau = excess > 0 ? (prefactor * (th > 0 ? 2 * th : 1) * Math.pow(lowest, excess)) / excess : 0
+  for (let panel = 0; panel < count; panel++) plateau += thermal[panel * TERMS]!
+  return {
+    addAt,
+    errorEstimate: largest > 0 ? omitted / largest : 0,
+    integrals: {
+      reorganization: odd[last]!,
+      plateau: excess > 0 ? plateau : null,
+      variance: even[last]!,
+      third: odd[last + 1]!,
+    },
+  }
 }

@@ -8,7 +8,7 @@ export interface Continuum {
   density: (frequency: number) => number
   /** J(w) -> coefficient w^exponent for w -> 0. */
   low: { exponent: number; coefficient: number }
-  /** Below this frequency `low` is J(w) to a relative 1e-7 or better at 1e-3 of it, falling at least linearly. */
+  /** At and below 1e-7 of this frequency `low` is J(w) to a relative 1e-13. */
   lowScale: number
   /** Above this frequency J contributes nothing at working precision. */
   upper: number
@@ -20,3 +20,15 @@ export interface Continuum {
 
 /** g0 of one term at one time, written to out[0] (real) and out[1] (imaginary). */
 export type PointBroadening = (timePs: number, out: Float64Array) => void
+
+/** Integrals over one term, all in powers of rad/ps; null where they diverge. */
+export interface DensityIntegrals {
+  /** lambda / hbar = (1/pi) Int J/w dw */
+  reorganization: number
+  /** Re g0(infinity) = (1/pi) Int J coth(w / 2 th) / w^2 dw */
+  plateau: number | null
+  /** (1/pi) Int J coth(w / 2 th) dw */
+  variance: number | null
+  /** (1/pi) Int J w dw */
+  third: number | null
+}

@@ -29,7 +29,8 @@ export const powerLawContinuum = (term: PowerLawTerm): Continuum => {
       return scale * Math.pow(x, exponent) * Math.exp(gaussian ? -x * x : -x)
     },
     low: { exponent, coefficient: scale * Math.pow(cutoff, -exponent) },
-    lowScale: cutoff,
+    // The exponential departs from 1 linearly: the pure power must start far lower to hold to rounding.
+    lowScale: gaussian ? cutoff : 1e-7 * cutoff,
     upper: cutoff * REACH[term.cutoffShape],
     widestPanel: gaussian ? 1.7 * cutoff : 7 * cutoff,
   }

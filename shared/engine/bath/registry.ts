@@ -1,15 +1,27 @@
 /**
- * The closed list of bath kinds. A kind is one file that turns its parameters into a `Continuum`; its schema joins the
- * union in shared/schemas/parameter-set.ts, and the compiler then asks for its row here.
+ * The closed list of bath kinds. A kind is one file that turns its parameters into a `Continuum`, with closed forms where
+ * it has them; its schema joins the union in shared/schemas/parameter-set.ts, and the compiler then asks for its row here.
  */
 import type { BathTerm } from '../../schemas/parameter-set'
-import type { Continuum } from './continuum'
+import { buildFrequencyPanels } from '../frequency-panels'
+import type { Continuum, DensityIntegrals } from './continuum'
 import { powerLawContinuum } from './power-law'
 
-type ContinuumOf = { [K in BathTerm['kind']]: (term: Extract<BathTerm, { kind: K }>) => Continuum }
-
-const kinds: ContinuumOf = {
-  powerLaw: powerLawContinuum,
+interface BathKind<Term> {
+  toContinuum: (term: Term) => Continuum
+  /** Closed integrals; needed where J falls too slowly for panels. th in rad/ps. */
+  integrals?: (term: Term, th: number) => DensityIntegrals
 }
 
-export const toContinuum = (term: BathTerm): Continuum => kinds[term.kind](term)
+type Kinds = { [K in BathTerm['kind']]: BathKind<Extract<BathTerm, { kind: K }>> }
+
+const kinds: Kinds = {
+  powerLaw: { toContinuum: powerLawContinuum },
+}
+
+const kindOf = (term: BathTerm): BathKind<BathTerm> => kinds[term.kind] as BathKind<BathTerm>
+
+export const toContinuum = (term: BathTerm): Continuum => kindOf(term).toContinuum(term)
+
+export const densityIntegrals = (term: BathTerm, th: number): DensityIntegrals =>
+  kindOf(term).integrals?.(term, th) ?? buildFrequencyPanels(toContinuum(term), th, 0).integrals

@@ -10,6 +10,7 @@ const defaultExports = [
   'server/{api,routes,middleware,plugins}/**',
   'scripts/nuxt-server-extras.ts',
   'tests/**/global-setup.ts',
+  'server/error-handler.ts',
   'workers/**',
 ]
 

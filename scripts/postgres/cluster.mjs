@@ -88,7 +88,7 @@ export const startCluster = async ({ unsafeFast = false } = {}) => {
   const chosen = place()
   const folder = makeFolder(chosen.folder)
   const here = { ...chosen, folder, data: join(folder, 'data') }
-  return withLock(join(folder, 'start.lock'), async () => {
+  return withLock(join(folder, 'start.lock'), {}, async () => {
     if (!existsSync(join(here.data, 'PG_VERSION'))) initialise(here)
     const running = runningPort(here)
     const port = running ?? (await launch(here, { unsafeFast }))

@@ -36,7 +36,7 @@ const urlOf = (cluster, role, name) =>
 export const createDatabase = async (name, options = {}) => {
   checkName(name)
   const cluster = await startCluster(options)
-  const created = await withLock(join(cluster.folder, 'database.lock'), () => {
+  const created = await withLock(join(cluster.folder, 'database.lock'), {}, () => {
     if (query(cluster, 'postgres', `select 1 from pg_database where datname = '${name}'`) === '1') return false
     query(cluster, 'postgres', roleSql(cluster))
     query(cluster, 'postgres', `create database ${name} owner ${ownerRole}`)

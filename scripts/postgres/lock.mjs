@@ -19,9 +19,12 @@ const holderOf = (lock) => {
   }
 }
 
-/** Runs `work` while no other process of this machine holds the same lock folder. A lock left by a dead process is taken over. */
-export const withLock = async (lock, work) => {
-  const deadline = performance.now() + 120_000
+/**
+ * Runs `work` while no other process of this machine holds the same lock folder. A lock left by a dead process is taken
+ * over; a living one is waited for, up to `patienceMs`.
+ */
+export const withLock = async (lock, { patienceMs = 120_000 }, work) => {
+  const deadline = performance.now() + patienceMs
   for (let unnamed = 0; ;) {
     try {
       mkdirSync(lock)
@@ -33,7 +36,8 @@ export const withLock = async (lock, work) => {
     // A lock without a name is being taken this moment, or its holder died between two calls.
     unnamed = holder ? 0 : unnamed + 1
     if ((holder && !isAlive(holder)) || unnamed > 50) rmSync(lock, { recursive: true, force: true })
-    else if (performance.now() > deadline) throw new Error(`process ${holder} has held ${lock} for two minutes`)
+    else if (performance.now() > deadline)
+      throw new Error(`process ${holder} still holds ${lock}; waited ${patienceMs / 1000} s`)
     else await pause(100)
   }
   try {

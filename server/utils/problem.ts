@@ -2,6 +2,7 @@ import type { H3Error, H3Event } from 'h3'
 import { send, setResponseHeader, setResponseHeaders, setResponseStatus } from 'h3'
 import { AppError } from '../../shared/errors/app-error'
 import { errorCodes, type ErrorCode } from '../../shared/errors/codes'
+import { isDatabaseDown } from '../database/outage'
 import { closeUnreadRequest } from './close-unread'
 import { logger } from './logger'
 import { requestIdOf } from './request-context'
@@ -13,25 +14,6 @@ const codeOfStatus: Record<number, ErrorCode> = {
   405: 'request/method',
   413: 'input/too-large',
   415: 'input/media-type',
-}
-
-const networkCodes = new Set(['ECONNREFUSED', 'ECONNRESET', 'ETIMEDOUT', 'EPIPE', 'ENOTFOUND', 'EHOSTUNREACH'])
-
-/** PostgreSQL out of reach, shutting down, out of connections or over a time limit (classes 08, 53, 57). */
-export const isDatabaseDown = (error: unknown): boolean => {
-  for (let link = error, depth = 0; link instanceof Error && depth < 5; link = link.cause, depth++) {
-    const code = 'code' in link ? String(link.code) : ''
-    if (networkCodes.has(code) || /^(08|53|57)[0-9A-Z]{3}$/.test(code)) return true
-    if (
-      /timeout exceeded when trying to connect|Connection terminated|Query read timeout|Client has encountered a connection error/.test(
-        link.message,
-      )
-    ) {
-      return true
-    }
-    if (link instanceof AggregateError && link.errors.some((part) => isDatabaseDown(part))) return true
-  }
-  return false
 }
 
 const toAppError = (error: H3Error | Error): AppError => {

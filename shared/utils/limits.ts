@@ -10,6 +10,14 @@ export const limits = {
   waitingTimes: 256,
   modes: 64,
   bathTerms: 16,
+  /** Runs that one group may have waiting at a time. */
+  queuedRunsPerGroup: 20_000,
+  /** Runs of one answer, newest first. */
+  listedRuns: 500,
+  /** Attempts of one run that may lose their worker. */
+  runLosses: 3,
+  /** Event streams that one person may hold open at a time. */
+  eventStreamsPerUser: 6,
   /** Bytes of one uploaded measurement file. */
   uploadBytes: 64 * 1024 * 1024,
   /** Files of one group, and their bytes together. */

@@ -1,0 +1,65 @@
+import { BathTermSchema, type BathTerm } from '#shared/schemas/parameter-set'
+import type { DraftSet } from './draft'
+import { schemaFields, type SchemaField } from './schema-fields'
+
+/** What the table must know about a kind of bath term beyond its schema. */
+interface BathKind {
+  name: string
+  /** Spectral density as printed under the term's head. */
+  formula: string
+  /** A legal start for a new term. */
+  start: DraftSet
+  /** Values with a meaning of their own, offered beside the field of that name. */
+  presets?: Record<string, { value: number; label: string }[]>
+  /** Printed words for choices and for fields that are no quantities. */
+  words?: Record<string, string>
+}
+
+const kinds: Record<BathTerm['kind'], BathKind> = {
+  powerLaw: {
+    name: 'power law',
+    formula: 'J(ω) = π a ω^p ω_c^{1−p} exp(−(ω/ω_c)^q)',
+    start: {
+      kind: 'powerLaw',
+      couplingStrength: 0.3,
+      exponent: 3,
+      cutoffEnergyMeV: 1.5,
+      cutoffShape: 'gaussian',
+    },
+    presets: {
+      exponent: [
+        { value: 3, label: '3 deformation potential' },
+        { value: 1, label: '1 piezoelectric' },
+      ],
+    },
+    words: {
+      cutoffShape: 'cutoff shape',
+      gaussian: 'Gaussian, q = 2',
+      exponential: 'exponential, q = 1',
+    },
+  },
+}
+
+const members = new Map(BathTermSchema.options.map((option) => [option.shape.kind.value as BathTerm['kind'], option]))
+
+const isKind = (kind: unknown): kind is BathTerm['kind'] => typeof kind === 'string' && members.has(kind as never)
+
+export const bathKindOptions = [...members.keys()].map((kind) => ({ value: kind, label: kinds[kind].name }))
+
+export const bathKindOf = (term: unknown): BathKind | undefined => {
+  const kind = (term as { kind?: unknown } | undefined)?.kind
+  return isKind(kind) ? kinds[kind] : undefined
+}
+
+/** Rows of a term's table, from the schema of its kind. */
+export const bathFieldsOf = (term: unknown): SchemaField[] => {
+  const kind = (term as { kind?: unknown } | undefined)?.kind
+  const member = isKind(kind) ? members.get(kind) : undefined
+  return member ? schemaFields(member) : []
+}
+
+export const newBathTerm = (kind: BathTerm['kind']): DraftSet => structuredClone(kinds[kind].start)
+
+/** The printed word of a field or a choice; `cutoffShape` without an entry reads "cutoff shape". */
+export const wordOf = (kind: BathKind | undefined, key: string): string =>
+  kind?.words?.[key] ?? key.replace(/([A-Z])/g, (letter) => ` ${letter.toLowerCase()}`)

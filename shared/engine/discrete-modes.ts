@@ -8,6 +8,7 @@
  */
 import type { Mode } from '../schemas/parameter-set'
 import { angularFrequencyOf, occupationOf } from './constants'
+import type { TimeGrid } from './types'
 
 export interface ResolvedMode {
   /** rad/ps */
@@ -26,11 +27,49 @@ export const resolveModes = (modes: readonly Mode[], temperatureK: number): Reso
       thermalHuangRhys: huangRhys * (2 * occupationOf(energyMeV, temperatureK) + 1),
     }))
 
-/** Adds the modes' g0(t) to out[0], out[1]. */
-export const addModesAt = (modes: readonly ResolvedMode[], timePs: number, out: Float64Array): void => {
+/** Adds the modes' g0 at the times to re and im. */
+export const addModesAt = (
+  modes: readonly ResolvedMode[],
+  timesPs: Float64Array,
+  re: Float64Array,
+  im: Float64Array,
+): void => {
   for (const { frequency, huangRhys, thermalHuangRhys } of modes) {
-    const s = Math.sin((frequency * timePs) / 2)
-    out[0]! += 2 * thermalHuangRhys * s * s
-    out[1]! += huangRhys * Math.sin(frequency * timePs)
+    for (let index = 0; index < timesPs.length; index++) {
+      const phase = frequency * timesPs[index]!
+      const s = Math.sin(phase / 2)
+      re[index]! += 2 * thermalHuangRhys * s * s
+      im[index]! += huangRhys * Math.sin(phase)
+    }
+  }
+}
+
+/** Steps after which the rotation starts anew from sin and cos: its rounding then stays below 2e-15. */
+const RESYNCHRONISE = 64
+
+/** The same on a uniform grid, by rotating (cos, sin) of half the phase from step to step. */
+export const addModesOnGrid = (
+  modes: readonly ResolvedMode[],
+  grid: TimeGrid,
+  re: Float64Array,
+  im: Float64Array,
+): void => {
+  for (const { frequency, huangRhys, thermalHuangRhys } of modes) {
+    const half = (frequency * grid.stepPs) / 2
+    const cosStep = Math.cos(half)
+    const sinStep = Math.sin(half)
+    for (let block = 0; block < grid.samples; block += RESYNCHRONISE) {
+      const phase = (frequency * (block * grid.stepPs)) / 2
+      let c = Math.cos(phase)
+      let s = Math.sin(phase)
+      const stop = Math.min(block + RESYNCHRONISE, grid.samples)
+      for (let index = block; index < stop; index++) {
+        re[index]! += 2 * thermalHuangRhys * s * s
+        im[index]! += 2 * huangRhys * s * c
+        const next = c * cosStep - s * sinStep
+        s = s * cosStep + c * sinStep
+        c = next
+      }
+    }
   }
 }

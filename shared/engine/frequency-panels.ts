@@ -21,6 +21,10 @@ const TERMS = 20
 /** Panels below this w t go through the series; its first omitted term is then 5e-15. */
 const SERIES_LIMIT = 0.1
 const SERIES_TERMS = 4
+/** Half-width times t up to which a panel is summed by the power series of e^{-iht z} instead of Bessel functions. */
+const POWER_LIMIT = 1
+/** 1/19! < 1e-17 */
+const POWER_TERMS = 18
 
 export interface FrequencyPanels {
   /** Adds g0(t), t >= 0, to out[0], out[1]. */
@@ -31,15 +35,16 @@ export interface FrequencyPanels {
 }
 
 /** Ascending panel edges from `lowest` to the upper end: doubling, no wider than allowed, with the breaks as edges. */
-const panelEdges = (continuum: Continuum, lowest: number): number[] => {
-  const { upper, widestPanel, breaks } = continuum
-  const forced = [...(breaks ?? [])].filter((edge) => edge > lowest && edge < upper)
-  forced.push(upper)
+const panelEdges = (terms: readonly Continuum[], lowest: number): number[] => {
+  const forced = terms
+    .flatMap(({ upper, breaks }) => [...(breaks ?? []), upper])
+    .filter((edge) => edge > lowest)
+    .sort((a, b) => a - b)
   const edges = [lowest]
   for (const target of forced) {
     let edge = edges.at(-1)!
     while (edge < target) {
-      const width = Math.min(edge, widestPanel)
+      const width = terms.reduce((least, term) => (term.upper > edge ? Math.min(least, term.widestPanel) : least), edge)
       // The last piece before a target is stretched or halved rather than leaving a sliver.
       const left = target - edge
       edge = left <= 1.01 * width ? target : left < 2 * width ? edge + left / 2 : edge + width
@@ -49,11 +54,15 @@ const panelEdges = (continuum: Continuum, lowest: number): number[] => {
   return edges
 }
 
-/** th = k_B T / hbar in rad/ps, 0 at T = 0; longestPs bounds the times that will be asked for. */
-export const buildFrequencyPanels = (continuum: Continuum, th: number, longestPs: number): FrequencyPanels => {
-  const { density, low, lowScale } = continuum
-  const lowest = Math.min(1e-7 * Math.min(lowScale, th > 0 ? th : lowScale), SERIES_LIMIT / Math.max(longestPs, 1e-12))
-  const edges = panelEdges(continuum, lowest)
+/**
+ * The sum of all terms on one set of panels. th = k_B T / hbar in rad/ps, 0 at T = 0; longestPs bounds the times that
+ * will be asked for.
+ */
+export const buildFrequencyPanels = (terms: readonly Continuum[], th: number, longestPs: number): FrequencyPanels => {
+  const lowScale = terms.reduce((least, term) => Math.min(least, term.lowScale), th > 0 ? th : Infinity)
+  const lowest = Math.min(1e-7 * lowScale, SERIES_LIMIT / Math.max(longestPs, 1e-12))
+  const density = (w: number): number => terms.reduce((sum, term) => (w < term.upper ? sum + term.density(w) : sum), 0)
+  const edges = panelEdges(terms, lowest)
   const count = edges.length - 1
   const { nodes, weights } = gaussLegendre(TERMS)
   const analysis = legendreAnalysis(TERMS)
@@ -63,15 +72,20 @@ export const buildFrequencyPanels = (continuum: Continuum, th: number, longestPs
   /** 2h (-1)^(n/2) a_n, rows of TERMS per panel: thermal f_T and zero-temperature f. */
   const thermal = new Float64Array(count * TERMS)
   const vacuum = new Float64Array(count * TERMS)
+  /** h (-1)^(k/2) / k! Int_-1^1 f z^k dz, rows of POWER_TERMS per panel, for short times. */
+  const thermalPower = new Float64Array(count * POWER_TERMS)
+  const vacuumPower = new Float64Array(count * POWER_TERMS)
   /** Cumulative moments up to each panel: Int f_T w^(2k+2) and Int f w^(2k+1). */
   const even = new Float64Array((count + 1) * SERIES_TERMS)
   const odd = new Float64Array((count + 1) * SERIES_TERMS)
 
-  const prefactor = low.coefficient / Math.PI
-  for (let k = 0; k < SERIES_TERMS; k++) {
-    const power = low.exponent + 2 * k
-    odd[k] = (prefactor * Math.pow(lowest, power)) / power
-    even[k] = th > 0 ? 2 * th * odd[k]! : (prefactor * Math.pow(lowest, power + 1)) / (power + 1)
+  for (const { low } of terms) {
+    for (let k = 0; k < SERIES_TERMS; k++) {
+      const power = low.exponent + 2 * k
+      const vacuumMoment = ((low.coefficient / Math.PI) * Math.pow(lowest, power)) / power
+      odd[k]! += vacuumMoment
+      even[k]! += th > 0 ? 2 * th * vacuumMoment : (vacuumMoment * lowest * power) / (power + 1)
+    }
   }
 
   const values = new Float64Array(TERMS)
@@ -101,6 +115,13 @@ export const buildFrequencyPanels = (continuum: Continuum, th: number, longestPs
         power *= w
         even[row + k]! += fThermal * power
         power *= w
+      }
+      let scaled = half * weights[i]!
+      for (let k = 0; k < POWER_TERMS; k++) {
+        const sign = (k >> 1) % 2 === 0 ? scaled : -scaled
+        thermalPower[panel * POWER_TERMS + k]! += sign * fThermal
+        vacuumPower[panel * POWER_TERMS + k]! += sign * f
+        scaled *= nodes[i]! / (k + 1)
       }
     }
     let size = 0
@@ -134,24 +155,38 @@ export const buildFrequencyPanels = (continuum: Continuum, th: number, longestPs
       (t2 / 2) * (even[row]! - (t2 / 12) * (even[row + 1]! - (t2 / 30) * (even[row + 2]! - (t2 / 56) * even[row + 3]!)))
     let im = time * (odd[row]! - (t2 / 6) * (odd[row + 1]! - (t2 / 20) * (odd[row + 2]! - (t2 / 42) * odd[row + 3]!)))
     for (let panel = first; panel < count; panel++) {
-      sphericalBessel(halves[panel]! * time, TERMS, bessel)
-      const offset = panel * TERMS
+      const x = halves[panel]! * time
       let evenThermal = 0
       let oddThermal = 0
       let evenVacuum = 0
       let oddVacuum = 0
-      for (let n = 0; n < TERMS; n += 2) {
-        const j = bessel[n]!
-        const next = bessel[n + 1]!
-        evenThermal += thermal[offset + n]! * j
-        oddThermal += thermal[offset + n + 1]! * next
-        evenVacuum += vacuum[offset + n]! * j
-        oddVacuum += vacuum[offset + n + 1]! * next
+      if (x <= POWER_LIMIT) {
+        const square = x * x
+        const offset = panel * POWER_TERMS
+        for (let k = POWER_TERMS - 2; k >= 0; k -= 2) {
+          evenThermal = evenThermal * square + thermalPower[offset + k]!
+          oddThermal = oddThermal * square + thermalPower[offset + k + 1]!
+          evenVacuum = evenVacuum * square + vacuumPower[offset + k]!
+          oddVacuum = oddVacuum * square + vacuumPower[offset + k + 1]!
+        }
+        oddThermal *= x
+        oddVacuum *= x
+      } else {
+        sphericalBessel(x, TERMS, bessel)
+        const offset = panel * TERMS
+        for (let n = 0; n < TERMS; n += 2) {
+          const j = bessel[n]!
+          const next = bessel[n + 1]!
+          evenThermal += thermal[offset + n]! * j
+          oddThermal += thermal[offset + n + 1]! * next
+          evenVacuum += vacuum[offset + n]! * j
+          oddVacuum += vacuum[offset + n + 1]! * next
+        }
       }
       const phase = centres[panel]! * time
       const c = Math.cos(phase)
       const s = Math.sin(phase)
-      re += thermal[offset]! - (evenThermal * c - oddThermal * s)
+      re += thermal[panel * TERMS]! - (evenThermal * c - oddThermal * s)
       im += evenVacuum * s + oddVacuum * c
     }
     out[0]! += re
@@ -159,16 +194,20 @@ export const buildFrequencyPanels = (continuum: Continuum, th: number, longestPs
   }
 
   const last = count * SERIES_TERMS
-  // Int f_T below the first panel converges for p > 2, at T = 0 for p > 1; else Re g0 grows without bound.
-  const excess = low.exponent - (th > 0 ? 2 : 1)
-  let plateau = excess > 0 ? (prefactor * (th > 0 ? 2 * th : 1) * Math.pow(lowest, excess)) / excess : 0
-  for (let panel = 0; panel < count; panel++) plateau += thermal[panel * TERMS]!
+  let plateau: number | null = 0
+  for (const { low } of terms) {
+    // Int f_T below the first panel converges for p > 2, at T = 0 for p > 1; else Re g0 grows without bound.
+    const excess = low.exponent - (th > 0 ? 2 : 1)
+    const factor = (low.coefficient / Math.PI) * (th > 0 ? 2 * th : 1)
+    plateau = excess > 0 && plateau !== null ? plateau + (factor * Math.pow(lowest, excess)) / excess : null
+  }
+  if (plateau !== null) for (let panel = 0; panel < count; panel++) plateau += thermal[panel * TERMS]!
   return {
     addAt,
     errorEstimate: largest > 0 ? omitted / largest : 0,
     integrals: {
       reorganization: odd[last]!,
-      plateau: excess > 0 ? plateau : null,
+      plateau,
       variance: even[last]!,
       third: odd[last + 1]!,
     },

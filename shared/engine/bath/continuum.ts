@@ -18,7 +18,7 @@ export interface Continuum {
   breaks?: Float64Array
 }
 
-/** g0 of one term at one time, written to out[0] (real) and out[1] (imaginary). */
+/** Adds g0 at one time t >= 0 to out[0] (real) and out[1] (imaginary). */
 export type PointBroadening = (timePs: number, out: Float64Array) => void
 
 /** Integrals over one term, all in powers of rad/ps; null where they diverge. */

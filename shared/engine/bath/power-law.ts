@@ -13,7 +13,8 @@
  */
 import type { PowerLawTerm } from '../../schemas/parameter-set'
 import { angularFrequencyOf } from '../constants'
-import type { Continuum } from './continuum'
+import type { Continuum, PointBroadening } from './continuum'
+import { exponentialPowerLaw } from './power-law-exponential'
 
 /** The cutoff factor is below 1e-18 of its value at w_c beyond these multiples of w_c, for every exponent up to 6. */
 const REACH = { gaussian: 6.7, exponential: 56 } as const
@@ -35,3 +36,8 @@ export const powerLawContinuum = (term: PowerLawTerm): Continuum => {
     widestPanel: gaussian ? 1.7 * cutoff : 7 * cutoff,
   }
 }
+
+export const powerLawClosedForm = (term: PowerLawTerm, th: number): PointBroadening | undefined =>
+  term.cutoffShape === 'exponential'
+    ? exponentialPowerLaw(term.couplingStrength, term.exponent, angularFrequencyOf(term.cutoffEnergyMeV), th)
+    : undefined

@@ -4,24 +4,29 @@
  */
 import type { BathTerm } from '../../schemas/parameter-set'
 import { buildFrequencyPanels } from '../frequency-panels'
-import type { Continuum, DensityIntegrals } from './continuum'
-import { powerLawContinuum } from './power-law'
+import type { Continuum, DensityIntegrals, PointBroadening } from './continuum'
+import { powerLawClosedForm, powerLawContinuum } from './power-law'
 
 interface BathKind<Term> {
   toContinuum: (term: Term) => Continuum
-  /** Closed integrals; needed where J falls too slowly for panels. th in rad/ps. */
+  /** g0 without quadrature, where there is one for these parameters. th in rad/ps. */
+  closedForm?: (term: Term, th: number) => PointBroadening | undefined
+  /** Closed integrals; needed where J falls too slowly for panels. */
   integrals?: (term: Term, th: number) => DensityIntegrals
 }
 
 type Kinds = { [K in BathTerm['kind']]: BathKind<Extract<BathTerm, { kind: K }>> }
 
 const kinds: Kinds = {
-  powerLaw: { toContinuum: powerLawContinuum },
+  powerLaw: { toContinuum: powerLawContinuum, closedForm: powerLawClosedForm },
 }
 
 const kindOf = (term: BathTerm): BathKind<BathTerm> => kinds[term.kind] as BathKind<BathTerm>
 
 export const toContinuum = (term: BathTerm): Continuum => kindOf(term).toContinuum(term)
 
+export const closedFormOf = (term: BathTerm, th: number): PointBroadening | undefined =>
+  kindOf(term).closedForm?.(term, th)
+
 export const densityIntegrals = (term: BathTerm, th: number): DensityIntegrals =>
-  kindOf(term).integrals?.(term, th) ?? buildFrequencyPanels(toContinuum(term), th, 0).integrals
+  kindOf(term).integrals?.(term, th) ?? buildFrequencyPanels([toContinuum(term)], th, 0).integrals

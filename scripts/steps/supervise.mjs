@@ -3,7 +3,7 @@ import { setTimeout as pause } from 'node:timers/promises'
 import { projectRoot } from './paths.mjs'
 
 /** Longer than the server's own limit for ending its requests and runs, so that it is ended by force only when it hangs. */
-const graceMs = 20_000
+const graceMs = 12_000
 
 /**
  * Keeps a program of ours running: starts it again when it ends by itself with an error (an uncaught exception drains

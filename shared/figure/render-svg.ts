@@ -31,6 +31,8 @@ export const renderSvg = (option: ChartOption, { width, height, background, titl
       .renderToSVGString()
       // Marks for re-attaching a live chart; a file needs none.
       .replace(/ ecmeta_[a-z_]+="[^"]*"/g, '')
+      // A painted map fills its frame exactly, whatever the proportions of its samples.
+      .replace(/<image /g, '<image preserveAspectRatio="none" ')
     const head = title ? `<title>${escapeXml(plainLabel(title))}</title>` : ''
     return body.replace(/^(<svg[^>]*>)/, `$1${head}`)
   } finally {

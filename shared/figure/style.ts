@@ -60,4 +60,7 @@ const loneSurrogate = /[\ud800-\udbff](?![\udc00-\udfff])|(?<![\ud800-\udbff])[\
 
 /** A label is one line of text: line ends become blanks, characters that no XML file may hold are dropped. */
 export const plainLabel = (text: string): string =>
-  text.replace(/[\t\n\r]+/g, ' ').replace(unprintable, '').replace(loneSurrogate, '')
+  text
+    .replace(/[\t\n\r]+/g, ' ')
+    .replace(unprintable, '')
+    .replace(loneSurrogate, '')

@@ -7,7 +7,7 @@ import { findSession, touchSession } from '../database/repositories/sessions.rep
 
 export interface SignedIn {
   sessionId: string
-  confirmedAt: Date
+  minutesSinceConfirmed: number
   user: { id: string; email: string; name: string }
 }
 
@@ -16,7 +16,7 @@ export const findSignedIn = async (token: string): Promise<SignedIn | null> => {
   const row = await findSession(getDatabase(), hashOf(token))
   if (!row) return null
   if (row.stale) await touchSession(getDatabase(), row.sessionId)
-  return { sessionId: row.sessionId, confirmedAt: row.confirmedAt, user: row.user }
+  return { sessionId: row.sessionId, minutesSinceConfirmed: row.minutesSinceConfirmed, user: row.user }
 }
 
 /**

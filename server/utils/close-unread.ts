@@ -1,4 +1,5 @@
 import type { H3Event } from 'h3'
+import { hasBody } from './read-body'
 
 const graceMs = 500
 
@@ -8,8 +9,7 @@ const graceMs = 500
  */
 export const closeUnreadRequest = (event: H3Event): void => {
   const { req, res } = event.node
-  const hasBody = req.headers['transfer-encoding'] !== undefined || Number(req.headers['content-length'] ?? 0) > 0
-  if (!hasBody || req.complete) return
+  if (!hasBody(event) || req.complete) return
   if (!res.headersSent) res.setHeader('connection', 'close')
   req.pause()
   res.once('finish', () => setTimeout(() => req.socket.destroy(), graceMs).unref())

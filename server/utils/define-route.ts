@@ -6,7 +6,7 @@ import type { Role } from '../../shared/schemas/roles'
 import { limits } from '../../shared/utils/limits'
 import { findSignedIn, requireMembership, type SignedIn } from '../services/access.service'
 import { sendAnswer } from './answer'
-import { findUnstorableText, parseBody, readLimited, requireMediaType } from './read-body'
+import { findUnstorableText, hasBody, parseBody, readLimited, requireMediaType } from './read-body'
 import { requestIdOf } from './request-context'
 import { readSessionToken } from './session-cookie'
 
@@ -65,15 +65,18 @@ const readInput = async <
 ): Promise<Input<P, Q, B>> => {
   const params = parseParams(shape.params, pathParams)
   const query = shape.query ? parseInput(shape.query, getQuery(event)) : undefined
-  let body: unknown
-  if (shape.body && shape.body !== 'stream') {
-    requireMediaType(event, 'application/json')
-    const value = parseBody(await readLimited(event, limits.jsonBytes))
-    const unstorable = findUnstorableText(value, shape.unstoredKeys ?? [])
-    if (unstorable.length > 0) throw new AppError('input/invalid', { issues: unstorable })
-    body = parseInput(shape.body, value)
-  }
+  const body = shape.body === 'stream' ? undefined : await readBody(event, shape.body, shape.unstoredKeys ?? [])
   return { event, requestId: requestIdOf(event), params, query, body } as Input<P, Q, B>
+}
+
+/** A route without a body schema takes no body, or an empty JSON object from clients that always send one. */
+const readBody = async (event: H3Event, schema: Schema | undefined, unstored: readonly string[]): Promise<unknown> => {
+  if (!schema && !hasBody(event)) return undefined
+  requireMediaType(event, 'application/json')
+  const value = parseBody(await readLimited(event, limits.jsonBytes))
+  const unstorable = findUnstorableText(value, unstored)
+  if (unstorable.length > 0) throw new AppError('input/invalid', { issues: unstorable })
+  return parseInput(schema ?? z.strictObject({}), value)
 }
 
 /** Session row of this request, or 401. */

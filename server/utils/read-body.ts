@@ -19,6 +19,12 @@ export const readLimited = async (event: H3Event, limit: number): Promise<Buffer
   return Buffer.concat(chunks, length)
 }
 
+/** Whether the client announced a body, of whatever length. */
+export const hasBody = (event: H3Event): boolean => {
+  const { headers } = event.node.req
+  return headers['transfer-encoding'] !== undefined || Number(headers['content-length'] ?? 0) > 0
+}
+
 /** The media type itself, without parameters, in lower case. */
 export const mediaTypeOf = (event: H3Event): string =>
   (event.node.req.headers['content-type'] ?? '').split(';', 1)[0]?.trim().toLowerCase() ?? ''

@@ -28,3 +28,12 @@ export type SetVersionRequest = z.infer<typeof SetVersionRequestSchema>
 
 export const SetRenameSchema = z.strictObject({ name: lineOfText('a name') })
 export type SetRename = z.infer<typeof SetRenameSchema>
+
+/** Path of one version. */
+export const VersionParamsSchema = z.strictObject({
+  setId: z.uuid(),
+  version: z
+    .string()
+    .regex(/^[1-9]\d{0,8}$/)
+    .transform(Number),
+})

@@ -1,7 +1,8 @@
 import { and, asc, eq } from 'drizzle-orm'
 import type { Role } from '../../../shared/schemas/roles'
 import type { Queries } from '../client'
-import { groups, memberships, users } from '../schema'
+import { groups, measurements, memberships, parameterSets, runs, users } from '../schema'
+import type { GroupTx } from '../with-group'
 
 export interface GroupOfUser {
   id: string
@@ -54,3 +55,12 @@ export const createMembership = async (
 ): Promise<void> => {
   await db.insert(memberships).values(values)
 }
+
+export const countObjects = async (
+  tx: GroupTx,
+  groupId: string,
+): Promise<{ sets: number; runs: number; measurements: number }> => ({
+  sets: await tx.$count(parameterSets, eq(parameterSets.groupId, groupId)),
+  runs: await tx.$count(runs, eq(runs.groupId, groupId)),
+  measurements: await tx.$count(measurements, eq(measurements.groupId, groupId)),
+})

@@ -15,7 +15,8 @@ const alive = and(
 
 export interface SessionRow {
   sessionId: string
-  confirmedAt: Date
+  /** Since the password was last given, by the database's clock. */
+  minutesSinceConfirmed: number
   /** True when `last_seen_at` is old enough to be written again. */
   stale: boolean
   user: { id: string; email: string; name: string }
@@ -25,7 +26,7 @@ export const findSession = async (db: Queries, tokenHash: string): Promise<Sessi
   const [row] = await db
     .select({
       sessionId: sessions.id,
-      confirmedAt: sessions.confirmedAt,
+      minutesSinceConfirmed: sql<number>`extract(epoch from now() - ${sessions.confirmedAt})::float8 / 60`,
       stale: sql<boolean>`${sessions.lastSeenAt} < now() - interval '1 minute'`,
       user: { id: users.id, email: users.email, name: users.name },
     })
@@ -75,6 +76,22 @@ export const removeSession = async (db: Queries, userId: string, sessionId: stri
     .where(and(eq(sessions.userId, userId), eq(sessions.id, sessionId)))
     .returning({ id: sessions.id })
   return removed.length > 0
+}
+
+/** Who was signed in with it; null when nobody was. */
+export const removeSessionByToken = async (db: Queries, tokenHash: string): Promise<string | null> => {
+  const [removed] = await db
+    .delete(sessions)
+    .where(eq(sessions.tokenHash, tokenHash))
+    .returning({ userId: sessions.userId })
+  return removed?.userId ?? null
+}
+
+export const confirmSession = async (db: Queries, sessionId: string): Promise<void> => {
+  await db
+    .update(sessions)
+    .set({ confirmedAt: sql`now()` })
+    .where(eq(sessions.id, sessionId))
 }
 
 export const removeSessionsOf = async (db: Queries, userId: string, exceptId?: string): Promise<number> => {

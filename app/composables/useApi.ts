@@ -52,8 +52,8 @@ const send = async (method: string, path: string, body: unknown, options: Reques
 }
 
 const json = async <T>(answer: Promise<Response>): Promise<T> => {
-  const response = await answer
-  return (response.status === 204 ? undefined : await response.json()) as T
+  const text = await (await answer).text()
+  return (text === '' ? undefined : JSON.parse(text)) as T
 }
 
 /** The one way to speak to the server: JSON in, JSON out, every failure an ApiError with its issues by path. */

@@ -1,4 +1,5 @@
-import { ApiError } from '~/utils/api-error'
+import type { z } from 'zod'
+import { ApiError, invalidInput } from '~/utils/api-error'
 
 /** Sends a form: pending while under way, the failure as text, and its issues by field. A second call waits for none. */
 export const useSubmit = <A extends unknown[], R>(action: (...input: A) => Promise<R>) => {
@@ -30,4 +31,11 @@ export const useSubmit = <A extends unknown[], R>(action: (...input: A) => Promi
     issueFor: (path: string) => issueAt(issues.value, path),
     clear: () => (error.value = null),
   }
+}
+
+/** Checks a form with the server's own schema before it is sent; throws what the server would answer. */
+export const validated = <S extends z.ZodType>(schema: S, input: unknown): z.output<S> => {
+  const parsed = schema.safeParse(input)
+  if (!parsed.success) throw invalidInput(parsed.error.issues)
+  return parsed.data
 }

@@ -1,7 +1,4 @@
-import { z } from 'zod'
-
-// The content security policy forbids code made from text; without this zod would try it once and be reported.
-z.config({ jitless: true })
+import '~/utils/zod-jitless'
 
 export default defineNuxtPlugin(() => {
   const workingSets = useWorkingSetStore()

@@ -23,6 +23,18 @@ export class ApiError extends Error {
   }
 }
 
+/** What the server answers to values that its schema refuses. */
+export const invalidInput = (issues: readonly { path: PropertyKey[]; message: string }[]): ApiError =>
+  new ApiError({
+    status: 422,
+    code: 'input/invalid',
+    detail: 'Some values are not valid.',
+    issues: issues.map(({ path, message }) => ({
+      path: path.map((key) => (typeof key === 'number' ? key : String(key))),
+      message,
+    })),
+  })
+
 /** Path of a value as people read it: `bath[0].exponent`. */
 export const formatPath = (path: readonly PropertyKey[]): string =>
   path.reduce<string>(

@@ -53,3 +53,6 @@ export const formatBytes = (bytes: number): string => {
   if (bytes < 1e6) return `${formatNumber(bytes / 1e3, 3)} kB`
   return bytes < 1e9 ? `${formatNumber(bytes / 1e6, 3)} MB` : `${formatNumber(bytes / 1e9, 3)} GB`
 }
+
+/** Every digit of a stored value, as it would be typed back, with a true minus sign. */
+export const formatExact = (value: number): string => String(value).replace(/^-/, minus)

@@ -56,6 +56,8 @@ export const RunSummarySchema = z.object({
   linearGrid: GridDescriptionSchema.array(),
   mapGrid: GridDescriptionSchema.array(),
   warnings: z.array(z.string()),
+  /** What the engine chose and checked on the way, one line each. */
+  notes: z.array(z.string()).default([]),
   /** Per temperature; entries with `waitingTimeIndex` belong to one map. */
   quantities: z.array(
     z.object({

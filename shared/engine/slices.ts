@@ -1,0 +1,150 @@
+/**
+ * Slices of two-dimensional spectra through (E0, E0): along the diagonal and across it.
+ *
+ * | symbol | variable | unit | shape |
+ * | --- | --- | --- | --- |
+ * | x = E3 - E1 across, E along | axis | meV | [2 halfBins] |
+ * | S_R, S_N | rephasing, nonRephasing | ps^2 | [2 halfBins] complex |
+ * | Re(S_R + S_N) | absorptive | ps^2 | [2 halfBins] |
+ *
+ * One-dimensional transforms of `projection.ts`; with x in steps of two energy steps the points are those of the full map,
+ * and the numbers agree with it to rounding (tests/engine/slices.spec.ts).
+ *
+ * Strongly inhomogeneous reduction of the rephasing cross-diagonal (PHYSICS: one integral over t1 = t3 = t),
+ *   S_R(x) = (sqrt(2 pi)/sig) Int dt exp(i x t/hbar) R(t, t2, t) - R(0, t2, 0)/sig^2:
+ * its error is estimated from the curvature of R across t1 = t3, and it is taken when the estimate is below 1e-6 of the
+ * maximum; the band otherwise. The answer says which, and the estimate.
+ * Source: Siemens et al., Opt. Express 18, 17699 (2010), equations for the diagonal and cross-diagonal line shapes.
+ */
+import { fftPlan, inverseFft } from './fft'
+import type { Factors, MapTables, SignalTables } from './map-tables'
+import { wrappedBin, type MapBins } from './map'
+import { bandSamples, projections } from './projection'
+import type { ComplexSeries } from './types'
+
+export interface SliceMethod {
+  method: 'band' | 'reduction'
+  /** Estimated error of the reduction, as a fraction of the maximum of the slice; null without ensemble. */
+  reductionError: number | null
+  /** Samples of t3 - t1 that were summed. */
+  band: number
+}
+
+const REDUCTION_TOLERANCE = 1e-6
+
+const empty = (n: number): ComplexSeries => ({ re: new Float64Array(n), im: new Float64Array(n) })
+
+/** Transform exp(+i ...) of samples first, first+1, ... folded into `padded`, at the kept bins; first may be negative. */
+const keptTransform = (series: ComplexSeries, first: number, bins: MapBins): ComplexSeries => {
+  const { padded } = bins
+  const folded = empty(padded)
+  for (let j = 0; j < series.re.length; j++) {
+    const place = (((j + first) % padded) + padded) % padded
+    folded.re[place]! += series.re[j]!
+    folded.im[place]! += series.im[j]!
+  }
+  inverseFft(folded.re, folded.im, fftPlan(padded))
+  const count = 2 * bins.halfBins
+  const out = empty(count)
+  for (let i = 0; i < count; i++) {
+    const place = wrappedBin(i, bins)
+    out.re[i] = folded.re[place]!
+    out.im[i] = folded.im[place]!
+  }
+  return out
+}
+
+export interface Slices {
+  crossDiagonal: { rephasing: ComplexSeries; nonRephasing: ComplexSeries }
+  diagonal: { rephasing: ComplexSeries; nonRephasing: ComplexSeries }
+  method: SliceMethod
+}
+
+interface Reduction {
+  slice: ComplexSeries
+  error: number
+}
+
+/** P(t1) Q(t3) H(t1 + t3) without the ensemble. */
+const product = ({ p, q, h }: Factors, i: number, k: number): [number, number] => {
+  const ar = p.re[i]! * q.re[k]! - p.im[i]! * q.im[k]!
+  const ai = p.re[i]! * q.im[k]! + p.im[i]! * q.re[k]!
+  return [ar * h.re[i + k]! - ai * h.im[i + k]!, ar * h.im[i + k]! + ai * h.re[i + k]!]
+}
+
+const largestModulus = ({ re, im }: ComplexSeries): number =>
+  re.reduce((most, value, j) => Math.max(most, Math.hypot(value, im[j]!)), 0)
+
+/**
+ * The one-dimensional reduction with its error: half the second difference of R across t1 = t3 at the distance 1/sig,
+ * summed over the slice, and the change of the corner over that distance.
+ */
+export const reducedCrossDiagonal = (tables: SignalTables, bins: MapBins): Reduction | undefined => {
+  const { factors, samples: n, ensemble } = tables
+  if (!factors || !(ensemble > 0)) return undefined
+  const sigStep = Math.sqrt(2 * ensemble)
+  const scale = Math.sqrt(2 * Math.PI) / sigStep
+  const apart = Math.max(1, Math.round(1 / sigStep))
+  const signal = empty(2 * n - 1)
+  let curvature = 0
+  for (let j = 0; j < n; j++) {
+    const [re, im] = product(factors, j, j)
+    // P and Q both carry the half weight of their first sample: the single integral wants one of them.
+    const weight = j === 0 ? 2 * scale : scale
+    signal.re[2 * j] = weight * re
+    signal.im[2 * j] = weight * im
+    if (j > apart && j + apart < n) {
+      const before = product(factors, j - apart, j + apart)
+      const after = product(factors, j + apart, j - apart)
+      curvature += 0.5 * scale * Math.hypot(before[0] + after[0] - 2 * re, before[1] + after[1] - 2 * im)
+    }
+  }
+  const first = product(factors, 0, 0)
+  const later = product(factors, apart, apart)
+  const corner = [(4 * first[0]) / (sigStep * sigStep), (4 * first[1]) / (sigStep * sigStep)] as const
+  const cornerChange =
+    Math.hypot(later[0] - 4 * first[0], later[1] - 4 * first[1]) / (sigStep * sigStep) +
+    // The trapezoid of a Gaussian of few samples, exact to exp(-2 pi^2/(sig dt)^2).
+    scale * Math.hypot(first[0], first[1]) * Math.exp((-2 * Math.PI ** 2) / (sigStep * sigStep))
+  const slice = keptTransform(signal, 0, bins)
+  for (let i = 0; i < slice.re.length; i++) {
+    slice.re[i]! -= corner[0]
+    slice.im[i]! -= corner[1]
+  }
+  const largest = largestModulus(slice)
+  return { slice, error: largest > 0 ? (curvature + cornerChange) / largest : Infinity }
+}
+
+/** The rephasing cross-diagonal alone: what the preview draws. */
+export const rephasingCrossDiagonal = (
+  tables: SignalTables,
+  bins: MapBins,
+): { slice: ComplexSeries; method: SliceMethod } => {
+  const reduction = reducedCrossDiagonal(tables, bins)
+  const band = Math.min(tables.samples, bandSamples(tables))
+  const reductionError = reduction?.error ?? null
+  if (reduction && reduction.error <= REDUCTION_TOLERANCE) {
+    return { slice: reduction.slice, method: { method: 'reduction', reductionError, band } }
+  }
+  const { onSum } = projections(tables, false)
+  return { slice: keptTransform(onSum, 0, bins), method: { method: 'band', reductionError, band } }
+}
+
+/** All slices of one waiting time. */
+export const mapSlices = (tables: MapTables, bins: MapBins): Slices => {
+  const n = tables.rephasing.samples
+  const { slice, method } = rephasingCrossDiagonal(tables.rephasing, bins)
+  const rephasing = projections(tables.rephasing)
+  const nonRephasing = projections(tables.nonRephasing)
+  return {
+    crossDiagonal: { rephasing: slice, nonRephasing: keptTransform(nonRephasing.onDifference, 1 - n, bins) },
+    diagonal: {
+      rephasing: keptTransform(rephasing.onDifference, 1 - n, bins),
+      nonRephasing: keptTransform(nonRephasing.onSum, 0, bins),
+    },
+    method,
+  }
+}
+
+export const absorptiveOf = (rephasing: ComplexSeries, nonRephasing: ComplexSeries): Float64Array =>
+  rephasing.re.map((value, i) => value + nonRephasing.re[i]!)

@@ -70,6 +70,20 @@ export default defineNuxtConfig({
     worker: { format: 'es' },
   },
   hooks: {
+    // Nuxt 4.4.5 asks the client's configuration for a server entry in development and stops where ssr is off and there is
+    // none. Naming the entry that it would use (the empty shell) is all it wants.
+    'vite:extendConfig': (config, { isClient }) => {
+      const input = config.build?.rollupOptions?.input
+      if (
+        !isClient ||
+        process.env.NODE_ENV === 'production' ||
+        !input ||
+        typeof input !== 'object' ||
+        Array.isArray(input)
+      )
+        return
+      input.server = here('./node_modules/nuxt/dist/app/entry-spa.js')
+    },
     // nuxt-auth-utils brings GET and DELETE /api/_auth/session. Sessions have one entrance here: /api/session.
     'nitro:config': (config) => {
       config.handlers = config.handlers?.filter((handler) => handler.route !== '/api/_auth/session')

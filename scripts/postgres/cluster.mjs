@@ -1,7 +1,19 @@
 import { spawnSync } from 'node:child_process'
-import { chmodSync, chownSync, existsSync, mkdirSync, readFileSync, rmSync, writeFileSync } from 'node:fs'
+import {
+  chmodSync,
+  chownSync,
+  existsSync,
+  mkdirSync,
+  readFileSync,
+  realpathSync,
+  rmSync,
+  statSync,
+  writeFileSync,
+} from 'node:fs'
 import { join } from 'node:path'
+import { setTimeout as pause } from 'node:timers/promises'
 import { runAsServer, serverAccount } from './account.mjs'
+import { clearAftermath } from './aftermath.mjs'
 import { withLock } from './lock.mjs'
 import { choosePlace, makeFolder } from './place.mjs'
 import { freePort } from './port.mjs'
@@ -9,7 +21,9 @@ import { keepSecret } from './secrets.mjs'
 
 export const superuser = 'linewright_cluster'
 
-const lastLines = (file) => (existsSync(file) ? readFileSync(file, 'utf8').trim().split('\n').slice(-8).join('\n') : '')
+/** What was written to a log since it had `begun` bytes, its last lines. */
+const lastLines = (file, begun) =>
+  existsSync(file) ? readFileSync(file).subarray(begun).toString('utf8').trim().split('\n').slice(-8).join('\n') : ''
 
 const own = (path, mode) => {
   const account = serverAccount()
@@ -58,25 +72,33 @@ const launch = async ({ bin, folder, data }, { unsafeFast }) => {
   const memory = join(folder, 'port')
   const remembered = existsSync(memory) ? Number(readFileSync(memory, 'utf8')) : undefined
   let complaint = ''
-  // Between finding a free port and the server taking it, another process may have taken it: try again elsewhere.
-  for (const wanted of [remembered, undefined, undefined]) {
+  let wanted = remembered
+  const deadline = performance.now() + 20_000
+  do {
     const port = await freePort(wanted)
     const settings = [`-p ${port}`, '-h 127.0.0.1', "-c unix_socket_directories=''", '-c max_connections=200']
     if (unsafeFast) settings.push('-c fsync=off', '-c synchronous_commit=off', '-c full_page_writes=off')
     const args = ['start', '-w', '-t', '60', '-s', '-D', data, '-l', log, '-o', settings.join(' ')]
+    const begun = existsSync(log) ? statSync(log).size : 0
     const done = runAsServer(join(bin, 'pg_ctl'), args)
     if (done.status === 0) {
       writeFileSync(memory, `${port}\n`)
       return port
     }
-    complaint = `${done.stderr}\n${lastLines(log)}`
-    if (!/address already in use|could not bind/i.test(complaint)) break
-  }
+    complaint = `${done.stderr}\n${lastLines(log, begun)}`
+    // Between finding a free port and the server taking it, another process may have taken it: elsewhere, then.
+    if (/address already in use|could not bind/i.test(complaint)) wanted = undefined
+    // The children of a killed server need a moment to notice and to let go of its memory.
+    else if (/shared memory block.*still in use|postmaster\.pid" already exists/i.test(complaint)) await pause(200)
+    else break
+  } while (performance.now() < deadline)
   throw new Error(`PostgreSQL did not start in ${folder}:\n${complaint}`)
 }
 
+// By its real path: the server account may be unable to follow the link in the checkout.
 const place = () => {
-  const { folder, bin, major } = choosePlace()
+  const { folder: named, bin, major } = choosePlace()
+  const folder = existsSync(named) ? realpathSync(named) : named
   return { bin, major, folder, data: join(folder, 'data') }
 }
 
@@ -90,6 +112,7 @@ export const startCluster = async ({ unsafeFast = false } = {}) => {
   const here = { ...chosen, folder, data: join(folder, 'data') }
   return withLock(join(folder, 'start.lock'), {}, async () => {
     if (!existsSync(join(here.data, 'PG_VERSION'))) initialise(here)
+    await clearAftermath(here.data)
     const running = runningPort(here)
     const port = running ?? (await launch(here, { unsafeFast }))
     return { ...here, port, started: running === null }

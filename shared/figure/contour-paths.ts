@@ -32,21 +32,20 @@ export const traceContours = (part: MapPart, levels: readonly number[]): Contour
   })
 }
 
+/** Points on the border carry no interpolated place, so a line that reaches it ends at the last point inside. */
 const cutAtBorder = (ring: number[][], width: number, height: number): [number, number][][] => {
-  const isOnBorder = (a: number[], b: number[]): boolean =>
-    (a[0] === b[0] && (a[0] === 0 || a[0] === width)) || (a[1] === b[1] && (a[1] === 0 || a[1] === height))
+  const isOnBorder = ([x, y]: number[]): boolean => x === 0 || x === width || y === 0 || y === height
+  const start = ring.findIndex(isOnBorder)
+  // A ring that touches the border is walked from there, so that no line is cut at the ring's own seam.
+  const points = start < 0 ? ring : [...ring.slice(start, -1), ...ring.slice(0, start)]
   const lines: [number, number][][] = []
   let line: [number, number][] = []
-  for (let i = 0; i + 1 < ring.length; i++) {
-    const from = ring[i] as [number, number]
-    const to = ring[i + 1] as [number, number]
-    if (isOnBorder(from, to)) {
+  for (const point of points) {
+    if (!isOnBorder(point)) line.push(point as [number, number])
+    else if (line.length > 0) {
       if (line.length > 1) lines.push(line)
       line = []
-      continue
     }
-    if (line.length === 0) line.push(from)
-    line.push(to)
   }
   if (line.length > 1) lines.push(line)
   return lines

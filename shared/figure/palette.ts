@@ -46,7 +46,7 @@ const roleTokens = { simulation: 'glacier', measurement: 'ember', residual: 'sla
  * Lightness along a temperature series: the coldest curve stands out most from the paper, the hottest least. Both ends
  * keep a contrast of 3:1 with the paper (WCAG 2.2, 1.4.11).
  */
-const shadeEnds = { light: [0.36, 0.655], dark: [0.86, 0.52] } as const
+const shadeEnds = { light: [0.36, 0.645], dark: [0.86, 0.52] } as const
 
 /** Colour of one series; `shade` runs 0..1 along a series of temperatures and moves lightness only. */
 export const seriesOklch = (role: SeriesRole, mode: ColorMode, shade?: number): Oklch => {

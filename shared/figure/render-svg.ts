@@ -10,6 +10,21 @@ use([LineChart, CustomChart, GridComponent, SVGRenderer])
 const escapeXml = (text: string): string =>
   text.replace(/&/g, '&amp;').replace(/</g, '&lt;').replace(/>/g, '&gt;').replace(/"/g, '&quot;')
 
+/**
+ * Takes out what serves a live chart only: marks for re-attaching it, hover classes and their style sheet. Labels cannot
+ * be hit, because in them quotes and angle brackets are escaped.
+ */
+const tidy = (svg: string): string =>
+  svg
+    .replace(/ ecmeta_[a-z_]+="[^"]*"/g, '')
+    .replace(/ class="zr[^"]*"/g, '')
+    .replace(/ pointer-events="[a-z]+"/g, '')
+    .replace(/<style[^>]*>[\s\S]*?<\/style>\s*/g, '')
+    // The number of charts drawn before is in the names of clip paths: the same figure shall give the same file.
+    .replace(/(id="|url\(#)zr\d+-/g, '$1')
+    // A painted map fills its frame exactly, whatever the proportions of its samples.
+    .replace(/<image /g, '<image preserveAspectRatio="none" ')
+
 export interface SvgOptions {
   width: number
   height: number
@@ -27,12 +42,7 @@ export const renderSvg = (option: ChartOption, { width, height, background, titl
   const chart = init(null, null, { renderer: 'svg', ssr: true, width, height })
   try {
     chart.setOption({ ...option, animation: false, ...(background ? { backgroundColor: background } : {}) })
-    const body = chart
-      .renderToSVGString()
-      // Marks for re-attaching a live chart; a file needs none.
-      .replace(/ ecmeta_[a-z_]+="[^"]*"/g, '')
-      // A painted map fills its frame exactly, whatever the proportions of its samples.
-      .replace(/<image /g, '<image preserveAspectRatio="none" ')
+    const body = tidy(chart.renderToSVGString())
     const head = title ? `<title>${escapeXml(plainLabel(title))}</title>` : ''
     return body.replace(/^(<svg[^>]*>)/, `$1${head}`)
   } finally {

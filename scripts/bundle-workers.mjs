@@ -3,18 +3,20 @@ import { join } from 'node:path'
 import { build } from 'esbuild'
 
 /**
- * Compiles every entry of workers/ to one self-contained .mjs. piscina stays external: its move() marks results with
- * a private symbol, which a bundled copy would not share with the pool.
+ * Compiles every thread entry of workers/, and the process that works the queue (`queue.mjs`), each to one file. piscina
+ * stays external: its move() marks results with a private symbol, which a bundled copy would not share with the pool.
  * @param {{ root: string, outdir: string }} options
  */
 export const bundleWorkers = async ({ root, outdir }) => {
   const folder = join(root, 'workers')
-  const entries = existsSync(folder)
+  const names = existsSync(folder)
     ? readdirSync(folder).filter((name) => name.endsWith('.ts') && !name.endsWith('.d.ts'))
     : []
-  if (entries.length === 0) return
   await build({
-    entryPoints: entries.map((name) => join(folder, name)),
+    entryPoints: {
+      ...Object.fromEntries(names.map((name) => [name.slice(0, -3), join(folder, name)])),
+      queue: join(root, 'server/jobs/worker-process.ts'),
+    },
     outdir,
     bundle: true,
     platform: 'node',

@@ -14,6 +14,8 @@ export const limits = {
   queuedRunsPerGroup: 20_000,
   /** Runs of one answer, newest first. */
   listedRuns: 500,
+  /** Bytes of all arrays of one run. */
+  runBytes: 512 * 1024 * 1024,
   /** Attempts of one run that may lose their worker. */
   runLosses: 3,
   /** Event streams that one person may hold open at a time. */

@@ -1,0 +1,131 @@
+import { onNotice, type Notices } from '../database/notifications'
+import { getDatabase } from '../database/client'
+import { filterAllowed } from '../database/repositories/event-streams.repository'
+import { listChangedRuns } from '../database/repositories/runs.repository'
+import { withGroup } from '../database/with-group'
+import { logger } from '../utils/logger'
+import { AppError } from '../../shared/errors/app-error'
+import { limits } from '../../shared/utils/limits'
+import { toRunEvent, type RunEvent } from './run-answer'
+
+/** Where the events of one open page go. */
+export interface RunSink {
+  /** `at`: moment of the change, which a page names when it comes back. */
+  send: (event: RunEvent, at: number) => void
+  close: () => void
+}
+
+interface Stream {
+  groupId: string
+  userId: string
+  sessionId: string
+  sink: RunSink
+  /** Newest moment sent of each run, so that an older notice that arrives late changes nothing. */
+  sent: Map<string, number>
+}
+
+const checkMs = 4000
+/** Changes become visible when their transaction commits, a little after the moment that they carry. */
+const overlapMs = 5000
+const rememberedRuns = 5000
+
+const streams = new Set<Stream>()
+let offs: (() => void)[] = []
+let checking: NodeJS.Timeout | undefined
+
+const offer = (stream: Stream, event: RunEvent, at: number): void => {
+  const before = stream.sent.get(event.id)
+  if (before !== undefined && before > at) return
+  stream.sent.delete(event.id)
+  stream.sent.set(event.id, at)
+  if (stream.sent.size > rememberedRuns) {
+    const [oldest] = stream.sent.keys()
+    if (oldest !== undefined) stream.sent.delete(oldest)
+  }
+  stream.sink.send(event, at)
+}
+
+const onRun = ({ groupId, at, ...event }: Notices['run'][0]): void => {
+  for (const stream of streams) if (stream.groupId === groupId) offer(stream, event as RunEvent, at)
+}
+
+const sendChanges = async (groupId: string, since: number | null, receivers: Iterable<Stream>): Promise<void> => {
+  const from = since === null ? null : new Date(since - overlapMs)
+  const rows = await withGroup(groupId, (tx) => listChangedRuns(tx, groupId, from))
+  for (const stream of receivers) {
+    if (streams.has(stream)) for (const row of rows) offer(stream, toRunEvent(row), row.changedAt.getTime())
+  }
+}
+
+/** Notices may have been missed while the line was down: every page gets what changed since it last heard anything. */
+const catchUp = async (): Promise<void> => {
+  const groups = new Map<string, Stream[]>()
+  for (const stream of streams) groups.set(stream.groupId, [...(groups.get(stream.groupId) ?? []), stream])
+  for (const [groupId, members] of groups) {
+    const heard = members.map((stream) => Math.max(...stream.sent.values()))
+    const since = Math.min(...heard)
+    await sendChanges(groupId, Number.isFinite(since) ? since : null, members)
+  }
+}
+
+/** Rights are looked at again while a stream is open: signing out, leaving a group or being disabled closes it. */
+const check = async (): Promise<void> => {
+  const open = [...streams]
+  const allowed = await filterAllowed(getDatabase(), open)
+  const keys = new Set(allowed.map(({ sessionId, groupId }) => `${sessionId} ${groupId}`))
+  for (const stream of open) if (!keys.has(`${stream.sessionId} ${stream.groupId}`)) stream.sink.close()
+}
+
+const quietly = (what: string, work: () => Promise<void>) => () => {
+  work().catch((error: unknown) => logger.warn({ event: what, reason: error instanceof Error ? error.message : error }))
+}
+
+const watch = (): void => {
+  if (checking) return
+  offs = [onNotice('run', onRun), onNotice('reconnected', quietly('stream.catch-up-failed', catchUp))]
+  checking = setInterval(quietly('stream.check-failed', check), checkMs)
+}
+
+const unwatch = (): void => {
+  if (streams.size > 0) return
+  clearInterval(checking)
+  checking = undefined
+  for (const off of offs) off()
+  offs = []
+}
+
+/**
+ * Sends the runs of a group to one page: first those that changed since `since` (or those that go on, for a page that
+ * comes for the first time), then every change. Returns what ends it.
+ */
+export const openRunStream = async (
+  input: { groupId: string; userId: string; sessionId: string; since: number | null },
+  open: () => RunSink,
+): Promise<() => void> => {
+  const { since, ...owner } = input
+  const own = [...streams].filter((stream) => stream.userId === owner.userId)
+  if (own.length >= limits.eventStreamsPerUser) {
+    throw new AppError('quota/exceeded', {
+      detail: `One person may keep ${limits.eventStreamsPerUser} event streams open; close another page first.`,
+    })
+  }
+  const stream: Stream = { ...owner, sink: open(), sent: new Map() }
+  const end = () => {
+    streams.delete(stream)
+    unwatch()
+  }
+  // Listening starts before the state is read, so that nothing can happen unheard in between.
+  streams.add(stream)
+  watch()
+  try {
+    await sendChanges(owner.groupId, since, [stream])
+  } catch (error) {
+    end()
+    throw error
+  }
+  return end
+}
+
+export const closeRunStreams = (): void => {
+  for (const stream of streams) stream.sink.close()
+}

@@ -36,7 +36,12 @@ const isReady = async (baseUrl: string): Promise<boolean> => {
 }
 
 /** Runs the built application (`.output`) as its own process and waits until it is ready. */
-export const startServer = async (options: { env: Record<string, string>; port?: number }): Promise<BuiltServer> => {
+export const startServer = async (options: {
+  env: Record<string, string>
+  port?: number
+  /** Called with everything the process writes, as it comes. */
+  onOutput?: (text: string) => void
+}): Promise<BuiltServer> => {
   const port = options.port ?? (await freePort())
   const baseUrl = `http://127.0.0.1:${port}`
   const child = spawn(process.execPath, [join(projectRoot, '.output/server/index.mjs')], {
@@ -53,8 +58,12 @@ export const startServer = async (options: { env: Record<string, string>; port?:
     },
   })
   const parts: Buffer[] = []
-  child.stdout.on('data', (part: Buffer) => parts.push(part))
-  child.stderr.on('data', (part: Buffer) => parts.push(part))
+  const keep = (part: Buffer) => {
+    parts.push(part)
+    options.onOutput?.(part.toString('utf8'))
+  }
+  child.stdout.on('data', keep)
+  child.stderr.on('data', keep)
   const output = () => Buffer.concat(parts).toString('utf8')
   const ended = new Promise<number | null>((done) => child.once('exit', (code) => done(code)))
   const stop = async (signal: NodeJS.Signals = 'SIGTERM') => {

@@ -37,8 +37,12 @@ export const GAUSSIAN_FWHM_PER_SIGMA = 2 * Math.sqrt(2 * Math.LN2)
 /** Angular frequency (rad/ps) of an energy (meV). */
 export const angularFrequencyOf = (energyMeV: number): number => energyMeV / HBAR_MEV_PS
 
-/** Thermal angular frequency k_B T / hbar, rad/ps. */
-export const thermalFrequencyOf = (temperatureK: number): number => (BOLTZMANN_MEV_PER_K * temperatureK) / HBAR_MEV_PS
+/** Below this temperature (K) nothing differs from 0 K within any time the engine takes: k_B T t / hbar < 1e-9 at 1e7 ps. */
+const COLDEST_K = 1e-15
+
+/** Thermal angular frequency k_B T / hbar, rad/ps; 0 at (and closer than 1e-15 K to) absolute zero. */
+export const thermalFrequencyOf = (temperatureK: number): number =>
+  temperatureK < COLDEST_K ? 0 : (BOLTZMANN_MEV_PER_K * temperatureK) / HBAR_MEV_PS
 
 /** Bose-Einstein occupation 1 / (exp(E / k_B T) - 1); 0 at T = 0. */
 export const occupationOf = (energyMeV: number, temperatureK: number): number =>

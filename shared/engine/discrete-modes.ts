@@ -27,6 +27,17 @@ export const resolveModes = (modes: readonly Mode[], temperatureK: number): Reso
       thermalHuangRhys: huangRhys * (2 * occupationOf(energyMeV, temperatureK) + 1),
     }))
 
+/**
+ * Rounding error of the modes' g0 up to a time, relative to max(1, |g0|): a phase wt is known to 2^-53 wt, and with
+ * A = S(2n + 1) the slope A sin(wt) is at most sqrt(2A) times max(1, A (1 - cos wt)) for A > 1/2.
+ */
+export const modesErrorEstimate = (modes: readonly ResolvedMode[], longestPs: number): number =>
+  modes.reduce(
+    (sum, { frequency, thermalHuangRhys: a }) =>
+      sum + 2 * Number.EPSILON * Math.max(1, frequency * longestPs) * (a > 0.5 ? Math.sqrt(2 * a) : a),
+    0,
+  )
+
 /** Adds the modes' g0 at the times to re and im. */
 export const addModesAt = (
   modes: readonly ResolvedMode[],

@@ -18,7 +18,7 @@
 import type { PointBroadening } from './bath/continuum'
 import { closedFormOf, toContinuum } from './bath/registry'
 import { thermalFrequencyOf } from './constants'
-import { addModesAt, addModesOnGrid, resolveModes } from './discrete-modes'
+import { addModesAt, addModesOnGrid, modesErrorEstimate, resolveModes, type ResolvedMode } from './discrete-modes'
 import { buildFrequencyPanels } from './frequency-panels'
 import { buildTimePanels } from './time-panels'
 import type { LineBroadening, Phonons, TimeGrid } from './types'
@@ -92,13 +92,29 @@ const addContinuum = (
   return { errorEstimate, method }
 }
 
+/** What a result says about itself, modes included. */
+const account = (
+  continuum: Pick<LineBroadening, 'errorEstimate' | 'method'>,
+  modes: readonly ResolvedMode[],
+  timesPs: Float64Array,
+): Pick<LineBroadening, 'errorEstimate' | 'method'> => ({
+  errorEstimate:
+    continuum.errorEstimate +
+    modesErrorEstimate(
+      modes,
+      timesPs.reduce((a, b) => Math.max(a, b), 0),
+    ),
+  method: continuum.method,
+})
+
 /** g0 at any times >= 0, in any order (ascending is fastest). */
 export const lineBroadeningAt = (phonons: Phonons, temperatureK: number, timesPs: Float64Array): LineBroadening => {
   const re = new Float64Array(timesPs.length)
   const im = new Float64Array(timesPs.length)
-  const account = addContinuum(phonons, temperatureK, timesPs, re, im)
-  addModesAt(resolveModes(phonons.modes, temperatureK), timesPs, re, im)
-  return { re, im, ...account }
+  const continuum = addContinuum(phonons, temperatureK, timesPs, re, im)
+  const modes = resolveModes(phonons.modes, temperatureK)
+  addModesAt(modes, timesPs, re, im)
+  return { re, im, ...account(continuum, modes, timesPs) }
 }
 
 /** g0 on a uniform time grid from t = 0. */
@@ -107,7 +123,8 @@ export const lineBroadening = (phonons: Phonons, temperatureK: number, grid: Tim
   for (let index = 0; index < grid.samples; index++) times[index] = index * grid.stepPs
   const re = new Float64Array(grid.samples)
   const im = new Float64Array(grid.samples)
-  const account = addContinuum(phonons, temperatureK, times, re, im)
-  addModesOnGrid(resolveModes(phonons.modes, temperatureK), grid, re, im)
-  return { re, im, ...account }
+  const continuum = addContinuum(phonons, temperatureK, times, re, im)
+  const modes = resolveModes(phonons.modes, temperatureK)
+  addModesOnGrid(modes, grid, re, im)
+  return { re, im, ...account(continuum, modes, times) }
 }

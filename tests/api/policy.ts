@@ -86,4 +86,22 @@ export const policy: Record<string, RoutePolicy> = {
     steps: { version: '1' },
     status: 200,
   },
+
+  'groups/[groupId]/events.get.ts': { access: 'viewer', status: 200, stream: true },
+  'groups/[groupId]/runs/index.get.ts': { access: 'viewer', status: 200 },
+  'groups/[groupId]/runs/index.post.ts': {
+    access: 'editor',
+    objects: ['setId'],
+    status: 201,
+    body: ({ setId }) => ({ setId, version: 1 }),
+  },
+  'groups/[groupId]/runs/[runId]/index.get.ts': { access: 'viewer', objects: ['runId'], status: 200 },
+  'groups/[groupId]/runs/[runId]/cancel.post.ts': { access: 'editor', objects: ['runId'], status: 200 },
+  'groups/[groupId]/runs/[runId]/retry.post.ts': { access: 'editor', objects: ['cancelledRunId'], status: 200 },
+  'groups/[groupId]/runs/[runId]/arrays/[...key].get.ts': {
+    access: 'viewer',
+    objects: ['doneRunId'],
+    steps: { key: 'spectralDensity/values' },
+    status: 200,
+  },
 }

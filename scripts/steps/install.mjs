@@ -1,4 +1,5 @@
 import { existsSync, readFileSync } from 'node:fs'
+import { ensureKernel } from '../build-kernel.mjs'
 import { inProject } from './paths.mjs'
 import { run } from './run.mjs'
 
@@ -23,6 +24,7 @@ export const findDrift = () => {
 /** Brings node_modules to what package-lock.json says. Costs milliseconds when it is there already. */
 export const ensureInstalled = async () => {
   const drift = findDrift()
+  if (!drift) await ensureKernel()
   if (!drift && existsSync(inProject('.nuxt/tsconfig.json'))) return false
   if (drift) {
     console.log(`Installing packages with npm ci (${drift}) ...`)

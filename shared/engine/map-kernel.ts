@@ -1,0 +1,26 @@
+/**
+ * Chooses the kernel of a map: the compiled one where this host and these tables allow it, else the plain one of `map.ts`.
+ * Both give the same numbers to rounding, 1e-14 of the maximum (tests/engine/map.spec.ts).
+ */
+import { kernelAbsorptiveMap } from './kernel/absorptive-map'
+import { kernelMap } from './kernel/complex-map'
+import { loadKernel } from './kernel/load-kernel'
+import { plainMap, plainMaps, type MapBins } from './map'
+import type { MapTables, SignalTables } from './map-tables'
+import type { ComplexSeries } from './types'
+
+/** Complex map of one signal, ps^2, row-major [E1][E3]. Polls `stop`; a stopped map is incomplete. */
+export const signalMap = (tables: SignalTables, bins: MapBins, stop?: () => boolean): ComplexSeries => {
+  const kernel = loadKernel()
+  return kernel && tables.factors ? kernelMap(kernel, tables, bins, stop) : plainMap(tables, bins, stop)
+}
+
+/** Re(S_R + S_N) alone, at a quarter of the transforms of the two complex maps. */
+export const absorptiveMap = (tables: MapTables, bins: MapBins): Float64Array => {
+  const kernel = loadKernel()
+  if (kernel && tables.rephasing.factors && tables.nonRephasing.factors) {
+    return kernelAbsorptiveMap(kernel, tables, bins)
+  }
+  const { rephasing, nonRephasing } = plainMaps(tables, bins)
+  return rephasing.re.map((value, i) => value + nonRephasing.re[i]!)
+}

@@ -1,5 +1,6 @@
 import { randomUUID } from 'node:crypto'
 import type { Role } from '../../shared/schemas/roles'
+import { measurementBody, smallReading, uploadBody } from './support/files'
 import { smallSet, type ObjectIds, type ObjectKind } from './support/objects'
 import { goodPassword } from './support/people'
 
@@ -103,5 +104,32 @@ export const policy: Record<string, RoutePolicy> = {
     objects: ['doneRunId'],
     steps: { key: 'spectralDensity/values' },
     status: 200,
+  },
+
+  'groups/[groupId]/files/index.post.ts': { access: 'editor', status: 201, raw: uploadBody },
+  'groups/[groupId]/files/[fileId]/reading.post.ts': {
+    access: 'editor',
+    objects: ['fileId'],
+    status: 200,
+    body: () => ({ reading: smallReading }),
+  },
+  'groups/[groupId]/files/[fileId]/content.get.ts': { access: 'viewer', objects: ['fileId'], status: 200 },
+  'groups/[groupId]/files/[fileId]/index.delete.ts': { access: 'editor', objects: ['fileId'], status: 204 },
+  'groups/[groupId]/measurements/index.get.ts': { access: 'viewer', status: 200 },
+  'groups/[groupId]/measurements/index.post.ts': {
+    access: 'editor',
+    objects: ['fileId'],
+    status: 201,
+    body: ({ fileId }) => measurementBody(fileId),
+  },
+  'groups/[groupId]/measurements/[measurementId]/index.get.ts': {
+    access: 'viewer',
+    objects: ['measurementId'],
+    status: 200,
+  },
+  'groups/[groupId]/measurements/[measurementId]/index.delete.ts': {
+    access: 'editor',
+    objects: ['measurementId'],
+    status: 204,
   },
 }

@@ -2,6 +2,7 @@ import { randomUUID } from 'node:crypto'
 import { expect } from 'vitest'
 import type { ParameterSetInput } from '../../../shared/schemas/parameter-set'
 import { sql } from './database'
+import { makeFile, makeMeasurement } from './files'
 import type { Person } from './people'
 
 /** A small, quick parameter set. */
@@ -84,6 +85,8 @@ const makeDoneRun: ObjectMaker = async (context) => {
 /** One maker a kind. A kind that a route's path names and that has no maker fails the matrix. */
 export const makers: Partial<Record<ObjectKind, ObjectMaker>> = {
   setId: makeSet,
+  fileId: makeFile,
+  measurementId: makeMeasurement,
   sessionId: makeSession,
   runId: makeRun,
   cancelledRunId: makeCancelledRun,

@@ -16,6 +16,10 @@ export interface FigureSeries {
   /** 0..1 along a series of temperatures, cold to hot. */
   shade?: number
   axis?: 'left' | 'right'
+  /** Stands out among its like: the temperature that is being looked at. */
+  isStrong?: boolean
+  /** How a line is drawn; solid unless said. Tells parts of one signal apart without a second colour. */
+  stroke?: 'solid' | 'dashed' | 'dotted'
 }
 
 /** A figure of curves, without any colour, pixel or library in it. */

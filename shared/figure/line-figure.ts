@@ -156,6 +156,8 @@ const pointElements = (series: FigureSeries, panel: Panel, layout: LineLayout): 
   return elements
 }
 
+const dashes = { solid: 'solid', dashed: [5, 3], dotted: [1.5, 2] } as const
+
 const lineSeries = (series: FigureSeries, panel: Panel, layout: LineLayout, axis: { x: number; y: number }) => {
   const { style, xRange } = layout
   const kept = decimate(series.x, series.y, xRange.low, xRange.high, Math.max(50, panel.box.width))
@@ -176,12 +178,12 @@ const lineSeries = (series: FigureSeries, panel: Panel, layout: LineLayout, axis
     emphasis: { disabled: true },
     lineStyle: {
       color: seriesHex(series.role, style.mode, series.shade),
-      width: series.role === 'residual' ? style.hairline * 1.2 : style.lineWidth,
-      type: series.role === 'secondary' ? [5, 3] : 'solid',
+      width: series.isStrong ? 1.7 * style.lineWidth : style.lineWidth,
+      type: dashes[series.stroke ?? (series.role === 'secondary' ? 'dashed' : 'solid')],
       cap: 'butt',
       join: 'round',
     },
-    z: 3,
+    z: series.isStrong ? 4 : 3,
   }
 }
 

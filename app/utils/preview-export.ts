@@ -1,6 +1,6 @@
 import { ENGINE_VERSION } from '#shared/engine/engine-version'
-import type { Preview } from '#shared/engine/preview'
-import { toCsv } from '#shared/figure/csv'
+import type { Preview, PreviewCurve } from '#shared/engine/preview'
+import { toCsv, type CsvColumn } from '#shared/figure/csv'
 import type { PreviewInput } from './preview-queue'
 
 const plain = (value: unknown): unknown => {
@@ -24,17 +24,27 @@ export const previewJson = (preview: Preview, input: PreviewInput): string => {
   return `${JSON.stringify(content, null, 1)}\n`
 }
 
-/** The drawn curves in columns, all digits; shorter columns end earlier. */
+const linearColumns = (name: string, curve: PreviewCurve | null): CsvColumn[] =>
+  curve
+    ? [
+        { name: `${name} energy (meV)`, values: curve.energiesMeV },
+        { name: `${name} (1/meV)`, values: curve.perMeV },
+      ]
+    : []
+
+/** The drawn curves in columns, all digits; a curve that the model does not allow is left out. */
 export const previewCsv = ({ spectralDensity, absorption, emission, crossDiagonal }: Preview): string =>
   toCsv([
     { name: 'phonon energy (meV)', values: spectralDensity.energiesMeV },
     { name: 'spectral density (meV)', values: spectralDensity.densityMeV },
-    { name: 'absorption energy (meV)', values: absorption.energiesMeV },
-    { name: 'absorption (1/meV)', values: absorption.perMeV },
-    { name: 'emission energy (meV)', values: emission.energiesMeV },
-    { name: 'emission (1/meV)', values: emission.perMeV },
-    { name: 'shift E3-E1 (meV)', values: crossDiagonal.shiftsMeV },
-    { name: 'rephasing slice, real', values: crossDiagonal.re },
-    { name: 'rephasing slice, imaginary', values: crossDiagonal.im },
-    { name: 'rephasing slice, magnitude', values: crossDiagonal.magnitude },
+    ...linearColumns('absorption', absorption),
+    ...linearColumns('emission', emission),
+    ...(crossDiagonal
+      ? [
+          { name: 'shift E3-E1 (meV)', values: crossDiagonal.shiftsMeV },
+          { name: 'rephasing slice, real', values: crossDiagonal.re },
+          { name: 'rephasing slice, imaginary', values: crossDiagonal.im },
+          { name: 'rephasing slice, magnitude', values: crossDiagonal.magnitude },
+        ]
+      : []),
   ])

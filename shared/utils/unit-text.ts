@@ -1,7 +1,7 @@
 import { create, createUnitDependencies, unitDependencies, type Unit as MathUnit } from 'mathjs'
 import { SI } from '../engine/constants'
 
-const math = create({ unitDependencies, createUnitDependencies })
+const math = create({ ...unitDependencies, ...createUnitDependencies })
 // mathjs still holds the 2010 value of the electronvolt; the SI fixed it exactly in 2019.
 math.createUnit('eV', { definition: `${SI.elementaryChargeC} J`, prefixes: 'short' }, { override: true })
 math.createUnit('kcal', '4184 J', { override: true })

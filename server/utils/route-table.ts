@@ -1,4 +1,3 @@
-/// <reference path="../types/nitro-virtual.d.ts" />
 import { handlers } from '#nitro-internal-virtual/server-handlers'
 
 const matches = (route: string, path: string): boolean => {

@@ -3,7 +3,7 @@ import { isAtLeast, roles, type Role } from '../../shared/schemas/roles'
 import { policy, type RoutePolicy } from './policy'
 import type { Answer, Client } from './support/client'
 import { makers, randomIds, type ObjectIds } from './support/objects'
-import { buildWorld, callers, type Caller, type Person, type World } from './support/people'
+import { buildWorld, callers, register, type Caller, type Person, type World } from './support/people'
 import { listBuiltRoutes, listRouteFiles, pathOf, toRoute, type Route } from './support/routes'
 import { readHead } from './support/stream'
 
@@ -90,20 +90,18 @@ describe.each(routes.filter(({ file }) => policy[file] && isRole(policy[file].ac
       expect(real.status).toBe(caller === 'signedOut' ? 401 : 404)
     })
 
-    it.runIf((entry.objects ?? []).length > 0)(
-      'gives an object of another group under the own group the answer of one that does not exist',
-      async () => {
-        const foreign = await makeObjects(entry, world.otherGroupId, world.people.outsider)
-        const client = world.people.owner.client
-        const real = comparable(await send(client, route, entry, { ...foreign, groupId: world.groupId }))
-        const invented = comparable(await send(client, route, entry, randomIds(world.groupId)))
-        expect(real).toEqual(invented)
-        expect(real.status).toBe(404)
-        // And it is still there for its own people.
-        const kept = await send(world.people.outsider.client, route, entry, foreign)
-        expect(kept.status, kept.text.slice(0, 500)).toBe(entry.status)
-      },
-    )
+    if (!entry.objects) return
+    it('gives an object of another group under the own group the answer of one that does not exist', async () => {
+      const foreign = await makeObjects(entry, world.otherGroupId, world.people.outsider)
+      const client = world.people.owner.client
+      const real = comparable(await send(client, route, entry, { ...foreign, groupId: world.groupId }))
+      const invented = comparable(await send(client, route, entry, randomIds(world.groupId)))
+      expect(real).toEqual(invented)
+      expect(real.status).toBe(404)
+      // And it is still there for its own people.
+      const kept = await send(world.people.outsider.client, route, entry, foreign)
+      expect(kept.status, kept.text.slice(0, 500)).toBe(entry.status)
+    })
   },
 )
 
@@ -129,7 +127,8 @@ describe.each(routes.filter(({ file }) => policy[file] && !isRole(policy[file].a
       expect(answer.status, answer.text).toBe(entry.status)
     })
 
-    it.runIf((entry.objects ?? []).length > 0)('with the id of something that belongs to someone else', async () => {
+    if (!entry.objects) return
+    it('with the id of something that belongs to someone else', async () => {
       const theirs = await makeObjects(entry, world.groupId, world.people.outsider)
       const client = world.people.viewer.client
       const real = comparable(await send(client, route, entry, theirs))

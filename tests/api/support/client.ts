@@ -21,6 +21,9 @@ export interface Sent {
   headers?: Record<string, string>
 }
 
+/** Loopback is a whole network: every client has an address of its own, so that they are not counted as one. */
+const randomLoopback = (): string => `127.${[1, 2, 3].map(() => 1 + Math.floor(Math.random() * 250)).join('.')}`
+
 const parse = (text: string, type: string): unknown => (/json/.test(type) && text ? JSON.parse(text) : undefined)
 
 /**
@@ -32,11 +35,14 @@ export class Client {
   /** Every Set-Cookie line that this client ever got. */
   readonly received: string[] = []
 
-  constructor(readonly baseUrl: string = inject('baseUrl')) {}
+  constructor(
+    readonly baseUrl: string = inject('baseUrl'),
+    readonly address: string = randomLoopback(),
+  ) {}
 
   /** The same cookies in another browser: a copied session. */
   copy(baseUrl: string = this.baseUrl): Client {
-    const copy = new Client(baseUrl)
+    const copy = new Client(baseUrl, this.address)
     for (const [name, value] of this.cookies) copy.cookies.set(name, value)
     return copy
   }
@@ -59,7 +65,8 @@ export class Client {
     }
     const { hostname, port } = new URL(this.baseUrl)
     return new Promise((done, fail) => {
-      const request = httpRequest({ hostname, port, path, method: sent.method ?? 'GET', headers, agent: false })
+      const method = sent.method ?? 'GET'
+      const request = httpRequest({ hostname, port, path, method, headers, agent: false, localAddress: this.address })
       request.once('error', fail)
       request.once('response', (response) => {
         const chunks: Buffer[] = []

@@ -99,7 +99,9 @@ const panelOf = (
     : isLog
       ? logRange(series, xRange, decades)
       : linearRange(series, xRange, kind === 'residual')
-  const wanted = Math.max(2, Math.round(box.height / (kind === 'residual' ? 28 : 52)))
+  // Decades are what a logarithmic axis is read by, so they may stand closer than values of a linear one.
+  const perLabel = kind === 'residual' ? 28 : isLog ? 26 : 52
+  const wanted = Math.max(2, Math.round(box.height / perLabel))
   return {
     box,
     yRange,

@@ -98,6 +98,15 @@ export const reachOf = (values: ArrayLike<number>): number => {
   return reach
 }
 
+/** Index of the value of largest magnitude. */
+export const largestAt = (values: ArrayLike<number>): number => {
+  let best = 0
+  for (let i = 1; i < values.length; i++) {
+    if (Math.abs(values[i] as number) > Math.abs(values[best] as number)) best = i
+  }
+  return best
+}
+
 /**
  * The square region in which something happens: where the magnitude passes `threshold` of its maximum, with a margin,
  * centred on the same energy on both axes so that the diagonal runs from corner to corner.

@@ -21,6 +21,11 @@ export interface MapFigure {
   valueLabel?: string
   /** Largest magnitude shown; maps of one run share it so that they can be compared. Default: that of this map. */
   reach?: number
+  /**
+   * `asinh` compresses large values, so that sidebands of a hundredth of the maximum show beside it: linear below 1 % of
+   * the reach, logarithmic above, for both signs. Contours then stand at equal steps of the compressed value.
+   */
+  scale?: 'linear' | 'asinh'
   /** Part of both axes that is shown; the same span on both keeps the map square. */
   range1?: Range
   range3?: Range

@@ -2,6 +2,7 @@ import type { Box } from './line-layout'
 import type { MapFigure, MapPlace } from './map-description'
 import { nearestSample, toMapPixel, type MapLayout } from './map-layout'
 import { lineTo, moveTo } from './paths'
+import type { Range } from './ticks'
 
 export interface EdgePaths {
   /** Value against excitation energy at the marked detection energy, in the upper panel. */
@@ -12,11 +13,15 @@ export interface EdgePaths {
   zero: string
 }
 
-const depthAt = (value: number, range: { low: number; high: number }): number =>
-  (value - range.low) / (range.high - range.low)
+/** Place of a value across an edge panel, 0..1, on the same scale as the colours. */
+const depthOf = (layout: MapLayout, range: Range): ((value: number) => number) => {
+  const { toShare } = layout.values
+  const low = toShare(range.low)
+  const span = toShare(range.high) - low
+  return (value) => (toShare(value) - low) / span
+}
 
-const isInside = (value: number, range: { low: number; high: number }): boolean =>
-  value >= range.low && value <= range.high
+const isInside = (value: number, range: Range): boolean => value >= range.low && value <= range.high
 
 const zeroLines = (top: Box, right: Box, zero: number): string => {
   if (zero < 0 || zero > 1) return ''
@@ -32,6 +37,7 @@ export const edgePaths = (figure: MapFigure, layout: MapLayout, place: MapPlace)
   const paths = { top: '', right: '', zero: '' }
   if (!layout.edges || figure.values.length === 0) return paths
   const { top, right, valueRange } = layout.edges
+  const depth = depthOf(layout, valueRange)
   const { energies1, energies3, values } = figure
   const columns = energies3.length
   const i0 = nearestSample(energies1, place.energy1)
@@ -39,15 +45,15 @@ export const edgePaths = (figure: MapFigure, layout: MapLayout, place: MapPlace)
   energies1.forEach((energy1, i) => {
     if (!isInside(energy1, layout.range1)) return
     const x = toMapPixel(layout, { energy1, energy3: 0 }).x
-    const y = top.top + (1 - depthAt(values[i * columns + j0] as number, valueRange)) * top.height
+    const y = top.top + (1 - depth(values[i * columns + j0] as number)) * top.height
     paths.top += paths.top ? lineTo(x, y) : moveTo(x, y)
   })
   energies3.forEach((energy3, j) => {
     if (!isInside(energy3, layout.range3)) return
     const y = toMapPixel(layout, { energy1: 0, energy3 }).y
-    const x = right.left + depthAt(values[i0 * columns + j] as number, valueRange) * right.width
+    const x = right.left + depth(values[i0 * columns + j] as number) * right.width
     paths.right += paths.right ? lineTo(x, y) : moveTo(x, y)
   })
-  paths.zero = zeroLines(top, right, depthAt(0, valueRange))
+  paths.zero = zeroLines(top, right, depth(0))
   return paths
 }

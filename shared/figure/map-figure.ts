@@ -5,7 +5,7 @@ import { contourable, paintable, visiblePart, type MapPart } from './map-data'
 import type { MapFigure } from './map-description'
 import { paintBar, paintMap, type IndexedImage } from './map-image'
 import { edgePaths } from './map-edges'
-import { mapLayout, toMapPixel, type MapLayout } from './map-layout'
+import { mapLayout, toBarPixel, toMapPixel, type MapLayout } from './map-layout'
 import { seriesHex } from './palette'
 import { framePath, lineTo, moveTo, tickPath } from './paths'
 import { fontFamily, plainLabel, textWidth } from './style'
@@ -25,7 +25,7 @@ const imageElement = (image: unknown, left: number, top: number, width: number, 
 /** Pixel centres stand at the samples, so the image reaches half a step beyond the first and the last one. */
 const mapImage = (part: MapPart, layout: MapLayout, figure: MapFigure, toImage: ImageSource) => {
   const fine = paintable(part)
-  const image = toImage(paintMap(fine, layout.valueRange, figure.signed, layout.style.mode))
+  const image = toImage(paintMap(fine, { low: figure.signed ? -1 : 0, high: 1 }, figure.signed, layout.style.mode))
   const topLeft = toMapPixel(layout, {
     energy1: fine.start1 - fine.step1 / 2,
     energy3: fine.start3 + (fine.count3 - 0.5) * fine.step3,
@@ -41,7 +41,7 @@ const mapImage = (part: MapPart, layout: MapLayout, figure: MapFigure, toImage: 
 const contourElements = (part: MapPart, layout: MapLayout, figure: MapFigure): unknown[] => {
   const steps = figure.contourSteps ?? defaultContourSteps
   const coarse = contourable(part)
-  const levels = contourLevels(layout.valueRange.high, steps, figure.signed)
+  const levels = contourLevels(1, steps, figure.signed)
   const paths = { above: '', below: '' }
   for (const { level, lines } of traceContours(coarse, levels)) {
     const side = level < 0 ? 'below' : 'above'
@@ -116,16 +116,15 @@ const placeElements = (layout: MapLayout, figure: MapFigure): unknown[] => {
 }
 
 const frameElements = (layout: MapLayout): unknown[] => {
-  const { box, bar, style, ticks1, ticks3, valueTicks, valueRange } = layout
+  const { box, bar, style, ticks1, ticks3, values } = layout
   const pen = { fill: 'none', stroke: style.ink, lineWidth: style.hairline }
-  const xs = (values: number[]) => values.map((energy1) => toMapPixel(layout, { energy1, energy3: 0 }).x)
-  const ys = (values: number[]) => values.map((energy3) => toMapPixel(layout, { energy1: 0, energy3 }).y)
-  const values = (list: number[]) =>
-    list.map((value) => bar.top + (1 - (value - valueRange.low) / (valueRange.high - valueRange.low)) * bar.height)
+  const xs = (list: number[]) => list.map((energy1) => toMapPixel(layout, { energy1, energy3: 0 }).x)
+  const ys = (list: number[]) => list.map((energy3) => toMapPixel(layout, { energy1: 0, energy3 }).y)
+  const onBar = values.ticks.major.map((value) => toBarPixel(layout, value))
   const none = { major: [], minor: [] }
   const sides = { major: ys(ticks3.major), minor: ys(ticks3.minor) }
   const mapTicks = { x: { major: xs(ticks1.major), minor: xs(ticks1.minor) }, left: sides, right: sides }
-  const barTicks = { x: none, left: none, right: { major: values(valueTicks.major), minor: [] } }
+  const barTicks = { x: none, left: none, right: { major: onBar, minor: [] } }
   const path = (pathData: string) => ({ type: 'path', silent: true, shape: { pathData }, style: pen })
   return [
     path(framePath(box)),
@@ -137,22 +136,23 @@ const frameElements = (layout: MapLayout): unknown[] => {
 }
 
 const barLabels = (layout: MapLayout, figure: MapFigure): unknown[] => {
-  const { bar, style, valueTicks, valueRange } = layout
+  const { bar, style } = layout
+  const { ticks } = layout.values
   const font = { fill: style.ink, font: `${style.fontSize}px ${fontFamily}`, textVerticalAlign: 'middle' }
-  const texts = valueTicks.major.map((value, k) => ({
+  const texts = ticks.major.map((value, k) => ({
     type: 'text',
     silent: true,
     style: {
       ...font,
-      text: valueTicks.labels[k] ?? '',
+      text: ticks.labels[k] ?? '',
       x: bar.left + bar.width + 6,
-      y: bar.top + (1 - (value - valueRange.low) / (valueRange.high - valueRange.low)) * bar.height,
+      y: toBarPixel(layout, value),
       textAlign: 'left',
     },
   }))
-  const label = labelWithFactor(figure.valueLabel ?? '', valueTicks.factorExponent)
+  const label = labelWithFactor(figure.valueLabel ?? '', ticks.factorExponent)
   if (!label) return texts
-  const widest = Math.max(0, ...valueTicks.labels.map((text) => textWidth(text, style.fontSize)))
+  const widest = Math.max(0, ...ticks.labels.map((text) => textWidth(text, style.fontSize)))
   return [
     ...texts,
     {
@@ -175,7 +175,9 @@ const barLabels = (layout: MapLayout, figure: MapFigure): unknown[] => {
 export const mapFigureOption = (figure: MapFigure, frame: FigureFrame, toImage: ImageSource): ChartOption => {
   const layout = mapLayout(figure, frame)
   const { box, bar, style } = layout
-  const part = visiblePart(figure)
+  const seen = visiblePart(figure)
+  // Painted and traced is the share of the reach, so that both kinds of scale take one road.
+  const part = { ...seen, values: seen.values.map(layout.values.toShare) }
   const axis = { x: 0, y: 0 }
   const isEmpty = part.count1 < 2 || part.count3 < 2
   return {

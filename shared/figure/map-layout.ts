@@ -3,6 +3,7 @@ import type { Box } from './line-layout'
 import { reachOf } from './map-data'
 import type { MapFigure, MapPlace } from './map-description'
 import { figureStyle, textWidth, type FigureStyle } from './style'
+import { valueScaleOf, type ValueScale } from './map-scale'
 import { linearTicks, type AxisTicks, type Range } from './ticks'
 
 export interface MapLayout {
@@ -15,8 +16,7 @@ export interface MapLayout {
   range3: Range
   ticks1: AxisTicks
   ticks3: AxisTicks
-  valueRange: Range
-  valueTicks: AxisTicks
+  values: ValueScale
 }
 
 const axisRange = (axis: Float64Array): Range => {
@@ -31,11 +31,11 @@ const edgeGap = 6
 
 const edgeSize = (width: number): number => Math.round(Math.min(88, Math.max(44, width * 0.15)))
 
-const margins = (style: FigureStyle, labels: { y: number; value: number }, edge: number) => ({
+const margins = (style: FigureStyle, labels: { y: number; value: number; title: boolean }, edge: number) => ({
   top: 8 + edge,
   bottom: style.fontSize + style.titleSize + 20,
   left: Math.ceil(labels.y + style.titleSize + 18),
-  right: Math.ceil(edge + 14 + barWidth + 6 + labels.value + style.titleSize + 16),
+  right: Math.ceil(edge + 14 + barWidth + 6 + labels.value + (labels.title ? style.titleSize + 16 : 6)),
 })
 
 const widest = (ticks: AxisTicks, size: number): number =>
@@ -46,20 +46,31 @@ const measure = (figure: MapFigure, frame: { width: number; mode: FigureFrame['m
   const range1 = figure.range1 ?? axisRange(figure.energies1)
   const range3 = figure.range3 ?? axisRange(figure.energies3)
   const reach = figure.reach ?? reachOf(figure.values)
-  const top = reach > 0 ? reach : 1
-  const valueRange = figure.signed ? { low: -top, high: top } : { low: 0, high: top }
   const ticks1 = linearTicks(range1, Math.max(2, Math.round(side / 80)), side)
   const ticks3 = linearTicks(range3, Math.max(2, Math.round(side / 60)), side)
-  const valueTicks = linearTicks(valueRange, Math.max(2, Math.round(side / 70)), side)
+  const values = valueScaleOf(figure.scale ?? 'linear', reach, figure.signed, side)
   const edge = figure.edges ? edgeSize(frame.width) + edgeGap : 0
-  const labels = { y: widest(ticks3, style.fontSize), value: widest(valueTicks, style.fontSize) }
-  return { style, range1, range3, ticks1, ticks3, valueRange, valueTicks, around: margins(style, labels, edge), edge }
+  const labels = {
+    y: widest(ticks3, style.fontSize),
+    value: widest(values.ticks, style.fontSize),
+    title: Boolean(figure.valueLabel),
+  }
+  return { style, range1, range3, ticks1, ticks3, values, around: margins(style, labels, edge), edge }
 }
 
-/** Height at which the map of this width is exactly square. */
-export const squareHeight = (figure: MapFigure, width: number): number => {
+/** The largest figure whose map is square and that fits into a width and a height. */
+export const squareSize = (
+  figure: MapFigure,
+  width: number,
+  maxHeight = Infinity,
+): { width: number; height: number } => {
   const { around } = measure(figure, { width, mode: 'light' }, width * 0.7)
-  return Math.round(Math.max(80, width - around.left - around.right) + around.top + around.bottom)
+  const wide = Math.max(80, width - around.left - around.right)
+  const side = Math.max(80, Math.min(wide, maxHeight - around.top - around.bottom))
+  return {
+    width: Math.round(side + around.left + around.right),
+    height: Math.round(side + around.top + around.bottom),
+  }
 }
 
 /** Values that the edge slices span: those of the whole map, so that slices keep their scale while the place moves. */
@@ -89,10 +100,17 @@ export const mapLayout = (figure: MapFigure, frame: FigureFrame): MapLayout => {
     ? {
         top: { left: box.left, top: box.top - edge, width: side, height: depth },
         right: { left: box.left + side + edgeGap, top: box.top, width: depth, height: side },
-        valueRange: edgeRange(figure, rest.valueRange),
+        valueRange: edgeRange(figure, rest.values.range),
       }
     : null
   return { ...rest, box, bar, edges }
+}
+
+/** Vertical place of a value on the colour bar. */
+export const toBarPixel = (layout: MapLayout, value: number): number => {
+  const { toShare, range } = layout.values
+  const low = toShare(range.low)
+  return layout.bar.top + (1 - (toShare(value) - low) / (toShare(range.high) - low)) * layout.bar.height
 }
 
 const along = (range: Range, value: number): number => (value - range.low) / (range.high - range.low)

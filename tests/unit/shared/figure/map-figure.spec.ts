@@ -12,7 +12,7 @@ import {
 import { edgePaths } from '../../../../shared/figure/map-edges'
 import { mapFigureOption } from '../../../../shared/figure/map-figure'
 import { paintMap, toRgba, type IndexedImage } from '../../../../shared/figure/map-image'
-import { fromMapPixel, mapLayout, squareHeight, toMapPixel } from '../../../../shared/figure/map-layout'
+import { fromMapPixel, mapLayout, squareSize, toBarPixel, toMapPixel } from '../../../../shared/figure/map-layout'
 import { mapFigureCsv, mapValueAt, summarizeMap } from '../../../../shared/figure/map-text'
 import { encodePng, storeOnly } from '../../../../shared/figure/png'
 import { rounded, sampleMap } from './sample-figures'
@@ -32,7 +32,7 @@ describe('option of a map', () => {
 
   it('is square, with the diagonal from corner to corner of equal ranges', () => {
     const map = sampleMap()
-    const { box } = mapLayout(map, { ...frame, height: squareHeight(map, frame.width) })
+    const { box } = mapLayout(map, { ...frame, ...squareSize(map, frame.width) })
     expect(Math.abs(box.width - box.height)).toBeLessThanOrEqual(1)
     const layout = mapLayout(map, frame)
     expect(toMapPixel(layout, { energy1: 1990, energy3: 1990 })).toEqual({
@@ -48,11 +48,28 @@ describe('option of a map', () => {
   })
 
   it('has a symmetric range when signed and starts at zero when not', () => {
-    expect(mapLayout(sampleMap(), frame).valueRange).toEqual({
+    expect(mapLayout(sampleMap(), frame).values.range).toEqual({
       low: -reachOf(sampleMap().values),
       high: reachOf(sampleMap().values),
     })
-    expect(mapLayout(sampleMap({ signed: false, reach: 2 }), frame).valueRange).toEqual({ low: 0, high: 2 })
+    expect(mapLayout(sampleMap({ signed: false, reach: 2 }), frame).values.range).toEqual({ low: 0, high: 2 })
+  })
+
+  it('fits into a height without wasting width', () => {
+    const fitted = squareSize(sampleMap(), 900, 400)
+    expect(fitted.height).toBe(400)
+    const { box, bar } = mapLayout(sampleMap(), { ...fitted, mode: 'light' })
+    expect(box.width).toBeCloseTo(box.height, 6)
+    expect(fitted.width - bar.left).toBeLessThan(100)
+  })
+
+  it('compresses by an inverse hyperbolic sine on request: odd, rising, a hundredth of the reach well in sight', () => {
+    const { values, bar } = mapLayout(sampleMap({ scale: 'asinh', reach: 2 }), frame)
+    expect(values.toShare(2)).toBeCloseTo(1, 12)
+    expect(values.toShare(-0.3)).toBeCloseTo(-values.toShare(0.3), 12)
+    expect(values.toShare(0.02)).toBeGreaterThan(0.15)
+    expect(values.ticks.labels).toEqual(['−2', '−0.2', '−0.02', '0', '0.02', '0.2', '2'])
+    expect(toBarPixel({ ...mapLayout(sampleMap({ scale: 'asinh', reach: 2 }), frame) }, -2)).toBe(bar.top + bar.height)
   })
 
   it('draws an empty, a constant and a single-sample map without failing', () => {
@@ -199,7 +216,7 @@ describe('reading a map', () => {
     const layout = mapLayout(map, frame)
     const paths = edgePaths(map, layout, { energy1: 2000, energy3: 2000 })
     expect(paths.top.match(/[ML]/g)).toHaveLength(41)
-    const { top, valueRange } = layout.edges ?? { top: layout.box, valueRange: layout.valueRange }
+    const { top, valueRange } = layout.edges ?? { top: layout.box, valueRange: layout.values.range }
     const heights = [...paths.top.matchAll(/[ML][\d.]+ ([\d.]+)/g)].map((match) => Number(match[1]))
     const share = (Math.max(...map.values) - valueRange.low) / (valueRange.high - valueRange.low)
     expect(Math.min(...heights)).toBeCloseTo(top.top + (1 - share) * top.height, 0)

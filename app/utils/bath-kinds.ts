@@ -38,6 +38,16 @@ const kinds: Record<BathTerm['kind'], BathKind> = {
       exponential: 'exponential, q = 1',
     },
   },
+  overdamped: {
+    name: 'overdamped (Drude-Lorentz)',
+    formula: 'J(ω) = 2λ ωΓ / (ω^2 + Γ^2)',
+    start: { kind: 'overdamped', reorganizationEnergyMeV: 2, relaxationEnergyMeV: 5 },
+  },
+  underdamped: {
+    name: 'underdamped oscillator',
+    formula: 'J(ω) = 2S ω_0^3 ωΓ / ((ω_0^2 − ω^2)^2 + ω^2Γ^2)',
+    start: { kind: 'underdamped', huangRhys: 0.2, energyMeV: 10, dampingEnergyMeV: 1 },
+  },
 }
 
 const members = new Map(BathTermSchema.options.map((option) => [option.shape.kind.value as BathTerm['kind'], option]))

@@ -117,13 +117,8 @@ describe.each(routes.filter(({ file }) => policy[file] && !isRole(policy[file].a
 
     it('with a session', async () => {
       // A person of its own: some of these routes end the session that calls them.
-      const { people } = await buildWorld()
-      const answer = await send(
-        people.owner.client,
-        route,
-        entry,
-        await makeObjects(entry, world.groupId, people.owner),
-      )
+      const person = await register('Passing Person')
+      const answer = await send(person.client, route, entry, await makeObjects(entry, world.groupId, person))
       expect(answer.status, answer.text).toBe(entry.status)
     })
 

@@ -36,7 +36,9 @@ const compile = async (text) => {
 export const ensureKernel = async () => {
   const text = await readFile(source, 'utf8')
   const { version } = JSON.parse(await readFile(join(root, 'node_modules/assemblyscript/package.json'), 'utf8'))
-  const stamp = createHash('sha256').update(JSON.stringify([text, options, version])).digest('hex')
+  const stamp = createHash('sha256')
+    .update(JSON.stringify([text, options, version]))
+    .digest('hex')
   if (existsSync(target) && (await readFile(target, 'utf8')).includes(stamp)) return
   const lines =
     Buffer.from(await compile(text))

@@ -72,9 +72,9 @@ const LINEAR: Rules = {
 
 const MAP: Rules = {
   name: 'two-dimensional maps',
-  lostMass: 1e-4,
-  shownMass: 1e-2,
-  marginWidths: 10,
+  lostMass: 1e-5,
+  shownMass: 3e-2,
+  marginWidths: 8,
   cutFraction: 3e-5,
   padding: 4,
   samples: limits.mapSamples,
@@ -202,7 +202,7 @@ const reachOf = (model: LineModel, rules: Rules) => {
 }
 
 /** Shortest time of interest: a tenth of the inverse span of everything that moves. */
-const timesFor = (reach: number, model: LineModel): Float64Array => {
+export const decayTimes = (reach: number, model: LineModel): Float64Array => {
   const fastest = reach + model.zeroPhononFwhmMeV + model.ensembleFwhmMeV
   const shortest = fastest > 0 ? PLANCK_MEV_PS / fastest / 20 : 1e-3
   return octaveTimes(shortest, shortest * 2 ** OCTAVES)
@@ -211,7 +211,7 @@ const timesFor = (reach: number, model: LineModel): Float64Array => {
 /** Grid of absorption and emission. */
 export const chooseLinearGrid = (model: LineModel, override: GridOverride = {}): GridResult => {
   const { reach, shown } = reachOf(model, LINEAR)
-  const times = timesFor(reach, model)
+  const times = decayTimes(reach, model)
   const bare = linearDecay(model, times, false)
   const width = lateWidthMeV(bare, model)
   const decay = model.ensembleFwhmMeV > 0 ? linearDecay(model, times) : bare
@@ -240,7 +240,7 @@ export const chooseLinearGrid = (model: LineModel, override: GridOverride = {}):
  */
 export const chooseMapGrid = (model: LineModel, shortestWaitPs: number, override: GridOverride = {}): GridResult => {
   const { reach, shown } = reachOf(model, MAP)
-  const times = timesFor(reach, model)
+  const times = decayTimes(reach, model)
   const gam = homogeneousRate(model)
   const bare = linearDecay(model, times, false)
   const width = lateWidthMeV(bare, model)

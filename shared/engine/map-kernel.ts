@@ -2,6 +2,7 @@
  * Chooses the kernel of a map: the compiled one where this host and these tables allow it, else the plain one of `map.ts`.
  * Both give the same numbers to rounding, 1e-14 of the maximum (tests/engine/map.spec.ts).
  */
+import { edgeCorrection } from './edge-correction'
 import { kernelAbsorptiveMap } from './kernel/absorptive-map'
 import { kernelMap } from './kernel/complex-map'
 import { loadKernel } from './kernel/load-kernel'
@@ -23,4 +24,11 @@ export const absorptiveMap = (tables: MapTables, bins: MapBins): Float64Array =>
   }
   const { rephasing, nonRephasing } = plainMaps(tables, bins)
   return rephasing.re.map((value, i) => value + nonRephasing.re[i]!)
+}
+
+/** Complex map with its end correction: what a run stores. */
+export const correctedMap = (tables: SignalTables, bins: MapBins, stop?: () => boolean): ComplexSeries => {
+  const map = signalMap(tables, bins, stop)
+  edgeCorrection(tables, bins.padded)?.addToMap(map, bins)
+  return map
 }

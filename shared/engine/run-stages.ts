@@ -1,6 +1,6 @@
 import { laserIntensity, weightAlong, weightMap } from './laser'
 import type { SpectralGrid } from './grid'
-import { signalMap } from './map-kernel'
+import { correctedMap } from './map-kernel'
 import { centreLineSlope, ellipticity } from './map-measured'
 import { mapTables } from './map-tables'
 import { curveQuantities, sliceWidth } from './measured'
@@ -70,9 +70,9 @@ export const runMaps = (
     const tables = mapTables(model, waitingTimePs, grid.timeStepPs, broadening)
     collector.poll()
 
-    const rephasing = signalMap(tables.rephasing, bins, collector.shouldStop)
+    const rephasing = correctedMap(tables.rephasing, bins, collector.shouldStop)
     collector.poll()
-    const nonRephasing = signalMap(tables.nonRephasing, bins, collector.shouldStop)
+    const nonRephasing = correctedMap(tables.nonRephasing, bins, collector.shouldStop)
     collector.poll()
     weightMap([rephasing.re, rephasing.im, nonRephasing.re, nonRephasing.im], lasers.map)
     const absorptive = absorptiveOf(rephasing, nonRephasing)

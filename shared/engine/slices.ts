@@ -16,6 +16,7 @@
  * maximum; the band otherwise. The answer says which, and the estimate.
  * Source: Siemens et al., Opt. Express 18, 17699 (2010), equations for the diagonal and cross-diagonal line shapes.
  */
+import { edgeCorrection } from './edge-correction'
 import { fftPlan, inverseFft } from './fft'
 import type { Factors, MapTables, SignalTables } from './map-tables'
 import { wrappedBin, type MapBins } from './map'
@@ -126,22 +127,46 @@ export const rephasingCrossDiagonal = (
   if (reduction && reduction.error <= REDUCTION_TOLERANCE) {
     return { slice: reduction.slice, method: { method: 'reduction', reductionError, band } }
   }
-  const { onSum } = projections(tables, false)
-  return { slice: keptTransform(onSum, 0, bins), method: { method: 'band', reductionError, band } }
+  const slice = keptTransform(projections(tables, false).onSum, 0, bins)
+  const offsets = offsetsOf(bins)
+  edgeCorrection(tables, bins.padded)?.addAt(
+    slice,
+    offsets.map((bin) => -bin),
+    offsets,
+  )
+  return { slice, method: { method: 'band', reductionError, band } }
+}
+
+/** Bins counted from E0. */
+const offsetsOf = ({ halfBins, stride }: MapBins): Int32Array =>
+  Int32Array.from({ length: 2 * halfBins }, (_, i) => (i - halfBins) * stride)
+
+/** Diagonal and cross-diagonal of one signal from its projections, end-corrected like the map. */
+const slicesOf = (tables: SignalTables, bins: MapBins): { across: ComplexSeries; along: ComplexSeries } => {
+  const { onSum, onDifference } = projections(tables)
+  const sums = keptTransform(onSum, 0, bins)
+  const differences = keptTransform(onDifference, 1 - tables.samples, bins)
+  const across = tables.rephasing ? sums : differences
+  const along = tables.rephasing ? differences : sums
+  const correction = edgeCorrection(tables, bins.padded)
+  const offsets = offsetsOf(bins)
+  correction?.addAt(
+    across,
+    offsets.map((bin) => -bin),
+    offsets,
+  )
+  correction?.addAt(along, offsets, offsets)
+  return { across, along }
 }
 
 /** All slices of one waiting time. */
 export const mapSlices = (tables: MapTables, bins: MapBins): Slices => {
-  const n = tables.rephasing.samples
   const { slice, method } = rephasingCrossDiagonal(tables.rephasing, bins)
-  const rephasing = projections(tables.rephasing)
-  const nonRephasing = projections(tables.nonRephasing)
+  const rephasing = slicesOf(tables.rephasing, bins)
+  const nonRephasing = slicesOf(tables.nonRephasing, bins)
   return {
-    crossDiagonal: { rephasing: slice, nonRephasing: keptTransform(nonRephasing.onDifference, 1 - n, bins) },
-    diagonal: {
-      rephasing: keptTransform(rephasing.onDifference, 1 - n, bins),
-      nonRephasing: keptTransform(nonRephasing.onSum, 0, bins),
-    },
+    crossDiagonal: { rephasing: slice, nonRephasing: nonRephasing.across },
+    diagonal: { rephasing: rephasing.along, nonRephasing: nonRephasing.along },
     method,
   }
 }

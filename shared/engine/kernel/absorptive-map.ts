@@ -10,7 +10,7 @@
 import { wrappedBin, type MapBins } from '../map'
 import type { MapTables, SignalTables } from '../map-tables'
 import type { ComplexSeries } from '../types'
-import { unpadded } from './complex-map'
+import { assertFits, unpadded } from './complex-map'
 import { KernelHeap, ROW_BYTES } from './kernel-memory'
 import type { KernelExports } from './load-kernel'
 
@@ -122,6 +122,7 @@ const hermitianEdge = (
 
 export const kernelAbsorptiveMap = (kernel: KernelExports, tables: MapTables, bins: MapBins): Float64Array => {
   const { padded } = bins
+  assertFits(tables.rephasing.samples, bins)
   const count = 2 * bins.halfBins
   const heap = new KernelHeap(kernel)
   const plan = heap.plan(padded)

@@ -4,6 +4,7 @@
  * t3 of every t1 first, of which the kept bins move to a store of blocks (four bins, all t1); then t1 of every block. The
  * kernel has the sign +i only: the rephasing t1 axis, which has -i, is read at the mirrored bins.
  */
+import { isPowerOfTwo } from '../fft'
 import { wrappedBin, type MapBins } from '../map'
 import type { SignalTables } from '../map-tables'
 import type { ComplexSeries } from '../types'
@@ -24,6 +25,7 @@ export const kernelMap = (
   const { p, q, h } = tables.factors!
   const { padded } = bins
   const count = 2 * bins.halfBins
+  assertFits(n, bins)
   const columns = 4 * Math.ceil(n / 4)
   const heap = new KernelHeap(kernel)
   const places = Int32Array.from({ length: count }, (_, i) => wrappedBin(i, bins))
@@ -63,6 +65,14 @@ export const kernelMap = (
     re: unpadded(heap.view(re, count * pitch), count, pitch),
     im: unpadded(heap.view(im, count * pitch), count, pitch),
   }
+}
+
+/** The kernel writes where it is told: sizes are checked before. */
+export const assertFits = (samples: number, { padded, halfBins }: MapBins): void => {
+  if (padded >= Math.max(4, samples) && isPowerOfTwo(padded) && halfBins % 2 === 0) return
+  throw new RangeError(
+    `expected a power of two from ${samples} up as padded length and an even number of bins a side; found ${padded} and ${halfBins}`,
+  )
 }
 
 export const unpadded = (plane: Float64Array, count: number, pitch: number): Float64Array => {

@@ -6,8 +6,9 @@ import { mapTables } from './map-tables'
 import { curveQuantities, sliceWidth } from './measured'
 import { modelQuantities, stokesShifts } from './model-quantities'
 import type { RunCollector } from './run-collector'
-import { assertFinite } from './run-types'
+import { assertFinite, RunInterruption } from './run-types'
 import { workOf } from './run-work'
+import { selfCheck, SELF_CHECK_TOLERANCE } from './self-check'
 import { absorptiveOf, mapSlices } from './slices'
 import { binEnergies, broadeningAtTimes, broadeningForWait, linearOnGrid, mapBins, sliceBins } from './stages'
 import type { ComplexSeries, LineModel } from './types'
@@ -62,6 +63,7 @@ export const runMaps = (
   collector.add(`map/${t}/energies3`, 'meV', energies)
   const atTimes = broadeningAtTimes(model, grid, waitingTimesPs.includes(0))
   collector.poll()
+  checkKernel(collector, model, grid, waitingTimesPs[0]!)
 
   waitingTimesPs.forEach((waitingTimePs, w) => {
     const broadening = broadeningForWait(model, grid, waitingTimePs, atTimes)
@@ -135,4 +137,19 @@ const sliceNote = (
   return method === 'reduction'
     ? `${place}strongly inhomogeneous reduction${estimate}.`
     : `${place}summed over ${band} samples of t3 - t1${estimate}.`
+}
+
+/** The kernel of this thread against the plain sum, once a temperature: a wrong kernel must not fill a store. */
+const checkKernel = (collector: RunCollector, model: LineModel, grid: SpectralGrid, waitingTimePs: number): void => {
+  const deviation = selfCheck(model, grid, waitingTimePs)
+  collector.notes.push(
+    `Self-check at ${model.temperatureK} K: fast kernel and plain sum agree to ${deviation.toExponential(1)} of the maximum.`,
+  )
+  if (deviation <= SELF_CHECK_TOLERANCE) return
+  throw new RunInterruption({
+    ok: false,
+    code: 'engine/self-check',
+    message: `self-check of the map kernel at ${model.temperatureK} K: expected agreement to ${SELF_CHECK_TOLERANCE}; found ${deviation}`,
+    issues: [],
+  })
 }

@@ -27,6 +27,8 @@ export const errorCodes = {
   'run/worker-lost': { status: 500, title: 'The worker stopped three times while computing this run.' },
   'engine/invalid': { status: 422, title: 'The engine cannot compute this request.' },
   'engine/not-finite': { status: 500, title: 'The computation produced a value that is not a finite number.' },
+  'engine/self-check': { status: 500, title: 'The fast map kernel did not agree with the plain one.' },
+  'engine/stopped': { status: 409, title: 'The computation was stopped.' },
   'measurement/unreadable': { status: 422, title: 'The file could not be read as a measured spectrum.' },
   'storage/full': { status: 507, title: 'There is no space left to store this.' },
   'service/unavailable': { status: 503, title: 'The service is not ready; try again shortly.' },

@@ -44,7 +44,10 @@ const panelEdges = (terms: readonly Continuum[], lowest: number): number[] => {
   for (const target of forced) {
     let edge = edges.at(-1)!
     while (edge < target) {
-      const width = terms.reduce((least, term) => (term.upper > edge ? Math.min(least, term.widestPanel) : least), edge)
+      const width = terms.reduce(
+        (least, term) => (term.upper > edge ? Math.min(least, term.panelWidth(edge)) : least),
+        edge,
+      )
       // The last piece before a target is stretched or halved rather than leaving a sliver.
       const left = target - edge
       edge = left <= 1.01 * width ? target : left < 2 * width ? edge + left / 2 : edge + width
@@ -80,6 +83,7 @@ export const buildFrequencyPanels = (terms: readonly Continuum[], th: number, lo
   const odd = new Float64Array((count + 1) * SERIES_TERMS)
 
   for (const { low } of terms) {
+    if (low.coefficient === 0) continue
     for (let k = 0; k < SERIES_TERMS; k++) {
       const power = low.exponent + 2 * k
       const vacuumMoment = ((low.coefficient / Math.PI) * Math.pow(lowest, power)) / power
@@ -196,6 +200,7 @@ export const buildFrequencyPanels = (terms: readonly Continuum[], th: number, lo
   const last = count * SERIES_TERMS
   let plateau: number | null = 0
   for (const { low } of terms) {
+    if (low.coefficient === 0) continue
     // Int f_T below the first panel converges for p > 2, at T = 0 for p > 1; else Re g0 grows without bound.
     const excess = low.exponent - (th > 0 ? 2 : 1)
     const factor = (low.coefficient / Math.PI) * (th > 0 ? 2 * th : 1)

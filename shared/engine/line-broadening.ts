@@ -15,48 +15,15 @@
  * Source: Mukamel, Principles of Nonlinear Optical Spectroscopy (1995), ch. 8; the linear term -i (lambda/hbar) t of g is
  * left out, because the engine's frame rotates at the zero-phonon energy.
  */
-import type { PointBroadening } from './bath/continuum'
-import { closedFormOf, toContinuum } from './bath/registry'
+import { continuumEvaluator } from './continuum-evaluator'
+import { addOscillation, withoutOscillations } from './damped-oscillation'
 import { thermalFrequencyOf } from './constants'
 import { addModesAt, addModesOnGrid, modesErrorEstimate, resolveModes, type ResolvedMode } from './discrete-modes'
-import { buildFrequencyPanels } from './frequency-panels'
 import { buildTimePanels } from './time-panels'
 import type { LineBroadening, Phonons, TimeGrid } from './types'
 
 /** Fewer times than this are evaluated one by one. */
 const FEW_TIMES = 300
-/** The closed forms agree with quadrature to this (tests/engine/power-law.spec.ts). */
-const CLOSED_FORM_ERROR = 1e-13
-
-interface Evaluator {
-  evaluate: PointBroadening
-  errorEstimate: number
-  method: string
-  /** Time on which g0 first varies, ps. */
-  shortest: number
-}
-
-/** All continuous terms as one function of time. */
-const continuumEvaluator = (phonons: Phonons, th: number, longest: number): Evaluator | undefined => {
-  const terms = phonons.bath.map((term) => ({ continuum: toContinuum(term), closedForm: closedFormOf(term, th) }))
-  const live = terms.filter(({ continuum }) => continuum.low.coefficient > 0)
-  if (live.length === 0) return undefined
-  const closed = live.flatMap(({ closedForm }) => closedForm ?? [])
-  const open = live.filter(({ closedForm }) => !closedForm).map(({ continuum }) => continuum)
-  const panels = open.length > 0 ? buildFrequencyPanels(open, th, longest) : undefined
-  const widest = live.reduce((most, { continuum }) => Math.max(most, continuum.widestPanel), 0)
-  return {
-    evaluate: (time, out) => {
-      for (const addAt of closed) addAt(time, out)
-      panels?.addAt(time, out)
-    },
-    errorEstimate: Math.max(panels?.errorEstimate ?? 0, CLOSED_FORM_ERROR),
-    method: [...(closed.length > 0 ? ['closed form'] : []), ...(panels ? ['Legendre panels in frequency'] : [])].join(
-      ', ',
-    ),
-    shortest: 2.5 / widest,
-  }
-}
 
 /** Adds the continuum to re and im and says how. */
 const addContinuum = (
@@ -69,16 +36,19 @@ const addContinuum = (
   let start = Infinity
   let end = 0
   for (const time of times) {
-    start = Math.min(start, time)
+    if (time > 0) start = Math.min(start, time)
     end = Math.max(end, time)
   }
-  const evaluator = continuumEvaluator(phonons, thermalFrequencyOf(temperatureK), end)
+  const evaluator = continuumEvaluator(phonons.bath, thermalFrequencyOf(temperatureK), end)
   if (!evaluator || !(end > 0)) return { errorEstimate: 0, method: 'discrete modes' }
-  const { evaluate, errorEstimate, method, shortest } = evaluator
+  const { evaluate, oscillations, errorEstimate, method, firstTime } = evaluator
   if (times.length >= FEW_TIMES) {
-    const panels = buildTimePanels(evaluate, { start, end, shortest }, times.length / 24)
+    const smooth = withoutOscillations(evaluate, oscillations)
+    const panels = buildTimePanels(smooth, { start, end, firstTime }, times.length / 24)
     if (panels) {
       panels.addTo(times, re, im)
+      for (const oscillation of oscillations) addOscillation(oscillation, times, re, im)
+      settleOrigin(times, re, im)
       return { errorEstimate: errorEstimate + panels.errorEstimate, method: `${method}, piecewise polynomials in time` }
     }
   }
@@ -90,6 +60,16 @@ const addContinuum = (
     im[index]! += out[1]!
   }
   return { errorEstimate, method }
+}
+
+/** g0(0) = 0 exactly: polynomials and oscillations cancel there only to rounding. */
+const settleOrigin = (times: Float64Array, re: Float64Array, im: Float64Array): void => {
+  for (let index = 0; index < times.length; index++) {
+    if (times[index] === 0) {
+      re[index] = 0
+      im[index] = 0
+    }
+  }
 }
 
 /** What a result says about itself, modes included. */

@@ -34,10 +34,10 @@ const spectralLines = (model: LineModel) => {
   const odd: number[] = []
   const th = thermalFrequencyOf(model.temperatureK)
   for (const term of model.bath) {
-    const { density, lowScale, upper } = toContinuum(term)
+    const { density, lowScale, reach } = toContinuum(term)
     const from = Math.log(lowScale * 1e-5)
-    const count = Math.ceil((Math.log(upper) - from) * POINTS_PER_E)
-    const step = (Math.log(upper) - from) / count
+    const count = Math.ceil((Math.log(reach) - from) * POINTS_PER_E)
+    const step = (Math.log(reach) - from) / count
     for (let i = 0; i <= count; i++) {
       const w = Math.exp(from + i * step)
       const weight = (density(w) / (Math.PI * w)) * step * (i === count ? 0.5 : 1)

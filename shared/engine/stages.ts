@@ -26,7 +26,7 @@ export interface SpectralDensityCurve {
 
 /** hbar J on 401 points from 0 to where bath and modes end. */
 export const spectralDensityCurve = (bath: readonly BathTerm[], modes: readonly Mode[]): SpectralDensityCurve => {
-  const upper = bath.reduce((most, term) => Math.max(most, toContinuum(term).upper * HBAR_MEV_PS), 0)
+  const upper = bath.reduce((most, term) => Math.max(most, toContinuum(term).reach * HBAR_MEV_PS), 0)
   const axis = (top: number) =>
     Float64Array.from({ length: DENSITY_POINTS }, (_, i) => (i * top) / (DENSITY_POINTS - 1))
   let shown = modes.reduce((most, mode) => Math.max(most, mode.energyMeV * 1.1), 0)

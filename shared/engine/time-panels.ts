@@ -100,17 +100,18 @@ export interface TimePanels {
 }
 
 /**
- * Panels for times from `start` to `end`; `shortest` is the scale on which g0 varies first (about 1.5 / w_max of the
- * sharp part of J). undefined when more than `maxPanels` would be needed: g0 is then not smooth enough for this method.
+ * Panels for times from `start` > 0 to `end`; `firstTime` is the scale on which g0 varies first. undefined when more than
+ * `maxPanels` would be needed: g0 is then not smooth enough for this method.
  */
 export const buildTimePanels = (
   evaluate: PointBroadening,
-  range: { start: number; end: number; shortest: number },
+  range: { start: number; end: number; firstTime: number },
   maxPanels: number,
 ): TimePanels | undefined => {
   const panels: TimePanel[] = []
-  /** Halves until the tolerance is met; false when the panels run out. */
+  /** Halves until the tolerance is met; false when the panels run out. Pieces before the range hold no times. */
   const cover = (start: number, end: number, depth: number): boolean => {
+    if (end < range.start) return true
     const panel = fitPanel(evaluate, start, end)
     if (panel.error <= TOLERANCE || depth === 0) {
       panels.push(panel)
@@ -121,11 +122,10 @@ export const buildTimePanels = (
   }
   let edge = 0
   while (edge < range.end) {
-    const next =
-      edge === 0 ? range.shortest : edge < 8 * range.shortest ? edge + Math.max(range.shortest, edge / 2) : 2 * edge
-    if (next > range.start && !cover(Math.max(edge, edge === 0 ? 0 : range.start), Math.min(next, range.end), 12))
-      return undefined
-    edge = next
+    const wider = edge < 8 * range.firstTime ? edge + Math.max(range.firstTime, edge / 2) : 2 * edge
+    const start = edge === 0 ? 0 : Math.max(edge, range.start)
+    if (wider > range.start && !cover(start, Math.min(wider, range.end), 30)) return undefined
+    edge = wider
   }
   const edges = Float64Array.from(panels, (panel) => panel.end)
   return {

@@ -16,10 +16,39 @@ export const PowerLawTermSchema = z.strictObject({
   cutoffShape: z.enum(cutoffShapes, { error: 'expected the cutoff shape "gaussian" or "exponential"' }),
 })
 
-/** Further bath kinds join this union; the engine dispatches on `kind`. */
-export const BathTermSchema = z.discriminatedUnion('kind', [PowerLawTermSchema], {
-  error: 'expected a bath term of kind "powerLaw"',
+/** J(w) = 2 lambda w G / (w^2 + G^2) (Drude-Lorentz). */
+export const OverdampedTermSchema = z.strictObject({
+  kind: z.literal('overdamped'),
+  reorganizationEnergyMeV: q(quantities.reorganizationEnergyMeV),
+  relaxationEnergyMeV: q(quantities.relaxationEnergyMeV),
 })
+
+/** J(w) = 2 S w_0^3 w G / ((w_0^2 - w^2)^2 + w^2 G^2) (underdamped Brownian oscillator). */
+export const UnderdampedTermSchema = z
+  .strictObject({
+    kind: z.literal('underdamped'),
+    huangRhys: q(quantities.huangRhys),
+    energyMeV: q(quantities.modeEnergyMeV),
+    dampingEnergyMeV: q(quantities.dampingEnergyMeV),
+  })
+  .superRefine(({ energyMeV, dampingEnergyMeV }, context) => {
+    if (dampingEnergyMeV < 2 * energyMeV) return
+    context.addIssue({
+      code: 'custom',
+      path: ['dampingEnergyMeV'],
+      message: `expected a damping energy below twice the energy (${2 * energyMeV} meV), else the vibration is overdamped; found ${dampingEnergyMeV} meV`,
+      input: dampingEnergyMeV,
+    })
+  })
+
+const bathKinds = ['powerLaw', 'overdamped', 'underdamped'] as const
+
+/** Further bath kinds join this union; the engine dispatches on `kind`. */
+export const BathTermSchema = z.discriminatedUnion(
+  'kind',
+  [PowerLawTermSchema, OverdampedTermSchema, UnderdampedTermSchema],
+  { error: `expected a bath term of kind ${bathKinds.map((kind) => `"${kind}"`).join(', ')}` },
+)
 
 export const ModeSchema = z.strictObject({
   label: z.string().max(limits.nameLength).default(''),
@@ -110,6 +139,8 @@ export const ParameterSetSchema = z
   })
 
 export type PowerLawTerm = z.infer<typeof PowerLawTermSchema>
+export type OverdampedTerm = z.infer<typeof OverdampedTermSchema>
+export type UnderdampedTerm = z.infer<typeof UnderdampedTermSchema>
 export type BathTerm = z.infer<typeof BathTermSchema>
 export type Mode = z.infer<typeof ModeSchema>
 export type Laser = z.infer<typeof LaserSchema>

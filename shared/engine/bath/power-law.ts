@@ -13,7 +13,7 @@
  */
 import type { PowerLawTerm } from '../../schemas/parameter-set'
 import { angularFrequencyOf } from '../constants'
-import type { Continuum, PointBroadening } from './continuum'
+import type { ClosedForm, Continuum } from './continuum'
 import { exponentialPowerLaw } from './power-law-exponential'
 
 /** The cutoff factor is below 1e-18 of its value at w_c beyond these multiples of w_c, for every exponent up to 6. */
@@ -25,6 +25,7 @@ export const powerLawContinuum = (term: PowerLawTerm): Continuum => {
   const gaussian = term.cutoffShape === 'gaussian'
   const scale = Math.PI * couplingStrength * cutoff
   return {
+    silent: couplingStrength === 0,
     density: (frequency) => {
       const x = frequency / cutoff
       return scale * Math.pow(x, exponent) * Math.exp(gaussian ? -x * x : -x)
@@ -33,11 +34,14 @@ export const powerLawContinuum = (term: PowerLawTerm): Continuum => {
     // The exponential departs from 1 linearly: the pure power must start far lower to hold to rounding.
     lowScale: gaussian ? cutoff : 1e-7 * cutoff,
     upper: cutoff * REACH[term.cutoffShape],
-    widestPanel: gaussian ? 1.7 * cutoff : 7 * cutoff,
+    reach: cutoff * REACH[term.cutoffShape],
+    panelWidth: () => (gaussian ? 1.7 : 7) * cutoff,
+    firstTime: (gaussian ? 1.5 : 0.35) / cutoff,
   }
 }
 
-export const powerLawClosedForm = (term: PowerLawTerm, th: number): PointBroadening | undefined =>
-  term.cutoffShape === 'exponential'
-    ? exponentialPowerLaw(term.couplingStrength, term.exponent, angularFrequencyOf(term.cutoffEnergyMeV), th)
-    : undefined
+export const powerLawClosedForm = (term: PowerLawTerm, th: number): ClosedForm | undefined => {
+  if (term.cutoffShape !== 'exponential') return undefined
+  const { couplingStrength, exponent, cutoffEnergyMeV } = term
+  return { addAt: exponentialPowerLaw(couplingStrength, exponent, angularFrequencyOf(cutoffEnergyMeV), th), from: 0 }
+}

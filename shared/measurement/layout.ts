@@ -27,7 +27,7 @@ export interface Row {
 
 /** Blanks may group the thousands within a cell, but in a file of bare commas they only pad: "1,5 234,5" is no cell. */
 const isNumberLike = (field: string, delimiter: Delimiter): boolean =>
-  shapeOf(field) !== undefined && !(delimiter === 'comma' && /[0-9]\s+[0-9]/.test(field))
+  shapeOf(field) !== undefined && !(delimiter === 'comma' && /[0-9][ \t]+[0-9]/.test(field))
 
 const isCellLike = (field: string, delimiter: Delimiter): boolean => isNumberLike(field, delimiter) || isMissing(field)
 
@@ -43,24 +43,79 @@ const rowOf = (line: Line, delimiter: Delimiter): Row | undefined => {
   return isRow ? { line: line.number, fields } : undefined
 }
 
-const longestRun = (lines: readonly Line[], delimiter: Delimiter): Row[] => {
-  let best: Row[] = []
-  let run: Row[] = []
+/** One line as a row under a delimiter; undefined where it is none. */
+const tryRow = (line: Line, delimiter: Delimiter): Row | undefined => {
+  try {
+    return rowOf(line, delimiter)
+  } catch {
+    // A stray quotation mark under a delimiter that is only being tried; the reading pass reports it.
+    return undefined
+  }
+}
+
+interface Run {
+  rows: Row[]
+  /** The line between this run and the one before, where it is a single one that holds a number: a spoilt row. */
+  spoiltBefore: boolean
+}
+
+const holdsNumber = (line: Line, delimiter: Delimiter): boolean => {
+  try {
+    return splitFields(line.text, delimiter, line.number).some((field) => isNumberLike(field, delimiter))
+  } catch {
+    return true
+  }
+}
+
+const runsOf = (lines: readonly Line[], delimiter: Delimiter): Run[] => {
+  const runs: Run[] = []
+  let between: Line[] = []
+  let open = false
   for (const line of lines) {
     if (isBlank(line.text) || isComment(line.text, delimiter)) continue
-    let row: Row | undefined
-    try {
-      row = rowOf(line, delimiter)
-    } catch {
-      // A stray quotation mark under a delimiter that is only being tried; the reading pass reports it.
+    const row = tryRow(line, delimiter)
+    if (row === undefined) {
+      between.push(line)
+      open = false
+      continue
     }
-    if (row === undefined || (run[0] !== undefined && row.fields.length !== run[0].fields.length)) {
-      if (run.length > best.length) best = run
-      run = []
+    const run = runs.at(-1)
+    if (open && run !== undefined && row.fields.length === run.rows[0]?.fields.length) run.rows.push(row)
+    else {
+      const [spoilt, ...more] = between
+      runs.push({
+        rows: [row],
+        spoiltBefore: spoilt !== undefined && more.length === 0 && holdsNumber(spoilt, delimiter),
+      })
     }
-    if (row !== undefined) run.push(row)
+    between = []
+    open = true
   }
-  return run.length > best.length ? run : best
+  return runs
+}
+
+/** Rows in front of a spoilt one that make it a row of the table and not a line of the header. */
+const rowsBeforeSpoilt = 3
+
+/**
+ * The longest run of rows, from its true beginning: where a single spoilt line, or a single row of another width, cuts
+ * a table in two, the table begins above it, so that the reading pass can name the line instead of taking the upper
+ * part for a header.
+ */
+const longestRun = (lines: readonly Line[], delimiter: Delimiter): Row[] => {
+  const runs = runsOf(lines, delimiter)
+  let best = 0
+  runs.forEach(({ rows }, index) => {
+    if (rows.length > (runs[best]?.rows.length ?? 0)) best = index
+  })
+  const width = (index: number) => runs[index]?.rows[0]?.fields.length
+  for (let above = best - 1; above >= Math.max(0, best - 2); above -= 1) {
+    const upper = runs[above]
+    const isCut = above === best - 1 ? runs[best]?.spoiltBefore : runs[best - 1]?.rows.length === 1
+    if (upper !== undefined && upper.rows.length >= rowsBeforeSpoilt && width(above) === width(best) && isCut)
+      return upper.rows
+  }
+  return runs[best]?.rows ?? []
 }
 
 /** A layout from a run of rows: columns that are empty throughout at the end are no columns, header rows go. */
@@ -125,6 +180,9 @@ export const findLayout = (lines: readonly Line[]): Layout => {
       'at least an axis and a value, separated by comma, semicolon, tab or blanks',
     )
   const first = lines.find((line) => !isBlank(line.text))
+  // Too many columns say more than that there are no rows.
+  if (first !== undefined && !first.text.includes('"'))
+    for (const delimiter of order) splitFields(first.text, delimiter, first.number)
   throw unreadable(
     first === undefined ? {} : { line: first.number },
     first === undefined ? 'only blank lines' : `no rows of numbers, beginning with ${quote(first.text.trim())}`,

@@ -149,13 +149,16 @@ export const decideMarks = (evidence: MarkEvidence): MarkDecision => {
 
   if (forPoint !== undefined) return decided('point', commaGroup ?? commaEither)
   if (forComma !== undefined) return decided('comma', pointGroup ?? pointEither)
-  const otherGroup = groupOf(evidence, false, false)
+  // A file has one thousands mark: where blanks or apostrophes group, the ambiguous mark is the decimal one.
+  const hasOtherGroup = groupOf(evidence, false, false) !== 'none'
+  if (hasOtherGroup && (pointEither === undefined || commaEither === undefined))
+    return decided(commaEither === undefined ? 'point' : 'comma', undefined)
   if (commaEither !== undefined)
     return {
-      marks: { decimalMark: 'comma', groupMark: pointEither === undefined ? otherGroup : 'point' },
+      marks: { decimalMark: 'comma', groupMark: pointEither === undefined ? 'none' : 'point' },
       question: ask(commaEither, 'comma', pointEither !== undefined),
     }
   if (pointEither !== undefined)
-    return { marks: { decimalMark: 'point', groupMark: otherGroup }, question: ask(pointEither, 'point', false) }
+    return { marks: { decimalMark: 'point', groupMark: 'none' }, question: ask(pointEither, 'point', false) }
   return decided('point', undefined)
 }

@@ -35,10 +35,10 @@ const headerQuestion = (header: readonly Line[], layout: Layout): ReadingQuestio
     return fields.length === layout.columns && fields.every((field) => shapeOf(field) !== undefined)
   })
   const [first] = rows
-  if (first === undefined || rows.length < 2) return undefined
+  if (first === undefined) return undefined
   return {
     field: 'headerLines',
-    message: `Above the table, ${rows.length} lines from line ${first.number} on also hold ${layout.columns} numbers each. If they are a table of their own, upload it as a file of its own.`,
+    message: `Above the table, ${rows.length === 1 ? `line ${first.number} also holds` : `${rows.length} lines from line ${first.number} on also hold`} ${layout.columns} numbers. If they belong to a spectrum, mend the lines between them and the table.`,
     choices: [{ label: `Leave out lines 1 to ${header.length}`, change: { headerLines: header.length } }],
   }
 }

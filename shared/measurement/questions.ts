@@ -93,6 +93,8 @@ export const findAxisUnit = (
   const [unit] = stated
   if (unit === undefined) return ask('The file does not say in which unit its axis is.')
   if (stated.length > 1) return ask(`The file names several units of the axis: ${stated.join(', ')}.`, unit)
+  // A wavelength of 0 or below is no doubt about the unit but a fault of the file, which the conversion names.
+  if (unit === 'nm' && !(extent.min > 0)) return { value: unit }
   const energies = energiesOf(extent, unit)
   const isRelative = unit !== 'nm' && extent.min <= 0
   if (!isRelative && !within(energies, plausible))

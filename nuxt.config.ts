@@ -68,6 +68,8 @@ export default defineNuxtConfig({
   vite: {
     plugins: [Icons({ compiler: 'vue3', autoInstall: false })],
     worker: { format: 'es' },
+    // In development the worker's script comes from Vite, past the middleware that sets the headers; the page demands this.
+    server: { headers: { 'cross-origin-embedder-policy': 'require-corp' } },
   },
   hooks: {
     // Nuxt 4.4.5 asks the client's configuration for a server entry in development and stops where ssr is off and there is

@@ -37,4 +37,22 @@ const acousticWarnings = (set: ParameterSet): string[] => {
   })
 }
 
-export const modelWarnings = (set: ParameterSet): string[] => [...lifetimeWarning(set), ...acousticWarnings(set)]
+/** A damped vibration broadens the line by itself; beside b_LO at the same energy the phonon is counted twice. */
+const opticalWarnings = (set: ParameterSet): string[] => {
+  const energy = set.opticalPhononEnergyMeV
+  if (!(set.opticalBroadeningMeV > 0) || energy === undefined) return []
+  return set.bath.flatMap((term, index) =>
+    term.kind === 'underdamped' && term.huangRhys > 0 && Math.abs(term.energyMeV - energy) <= term.dampingEnergyMeV
+      ? [
+          `bath.${index}: this damped vibration at ${inWords(term.energyMeV)} meV already broadens the line; opticalBroadeningMeV = ` +
+            `${inWords(set.opticalBroadeningMeV)} with opticalPhononEnergyMeV = ${inWords(energy)} may count the same phonon twice.`,
+        ]
+      : [],
+  )
+}
+
+export const modelWarnings = (set: ParameterSet): string[] => [
+  ...lifetimeWarning(set),
+  ...acousticWarnings(set),
+  ...opticalWarnings(set),
+]

@@ -75,4 +75,12 @@ describe('model at one temperature', () => {
     expect(modelWarnings({ ...set, acousticBroadeningMeVPerK: 0 })).toEqual([])
     expect(modelWarnings({ ...set, bath: [powerLaw()] })).toEqual([])
   })
+
+  it('warns of optical broadening beside a damped vibration of the same energy', () => {
+    const vibration = { kind: 'underdamped' as const, huangRhys: 0.2, energyMeV: 26, dampingEnergyMeV: 1 }
+    const set = parameterSet({ opticalBroadeningMeV: 40, opticalPhononEnergyMeV: 26.5, bath: [vibration] })
+    expect(modelWarnings(set)).toHaveLength(1)
+    expect(modelWarnings(set)[0]).toMatch(/bath\.0.*26 meV.*opticalBroadeningMeV = 40.*26\.5/)
+    expect(modelWarnings({ ...set, opticalPhononEnergyMeV: 30 })).toEqual([])
+  })
 })

@@ -2,6 +2,7 @@ import Complex from 'complex.js'
 import { describe, expect, it } from 'vitest'
 import { besselIScaled } from '../../shared/engine/bessel-i'
 import { digamma, hurwitzZeta, logGamma, trigamma } from '../../shared/engine/complex-functions'
+import { scaledE1, scaledEi } from '../../shared/engine/exponential-integral'
 import { dawson, faddeeva } from '../../shared/engine/faddeeva'
 import { gamma } from '../../shared/engine/gamma'
 import { sphericalBessel } from '../../shared/engine/spherical-bessel'
@@ -30,6 +31,8 @@ const functions: Record<string, (argument: Pair, order: number) => Pair> = {
   },
   dawson: ([x]) => [dawson(x), 0],
   gamma: ([x]) => [gamma(x), 0],
+  scaledE1: ([y]) => [scaledE1(y), 0],
+  scaledEi: ([y]) => [scaledEi(y), 0],
   besselI: ([z], m) => [besselIScaled(m + 3, z)[m]!, 0],
   sphericalBessel: ([x], n) => {
     const out = new Float64Array(20)
@@ -47,6 +50,8 @@ const bounds: Record<string, { bound: number; floor: number }> = {
   faddeeva: { bound: 3e-15, floor: 0 },
   dawson: { bound: 3e-15, floor: 0 },
   gamma: { bound: 1e-14, floor: 0 },
+  scaledE1: { bound: 2e-14, floor: 0 },
+  scaledEi: { bound: 2e-14, floor: 0.1 },
   besselI: { bound: 4e-15, floor: 0 },
   sphericalBessel: { bound: 5e-16, floor: 1 },
 }

@@ -13,7 +13,8 @@
  *   Re g0 = (lambda/G) { tau/pi + cot(pi x) e^{-x tau} + [2 gamma_E + psi(1+x) + psi(x)]/pi
  *                        + (2 x^2/pi) sum_(n>=1) e^{-n tau} / (n (n^2 - x^2)) }
  * The pole of cot(pi x) at x = m and the term n = m cancel; they are evaluated together. From tau = 0.6 on the sum takes at
- * most 62 terms; earlier (and at T = 0) the engine's quadrature is used, whose panels follow the 1/w^3 tail to 1e9 G.
+ * most 62 terms; earlier the engine's quadrature is used, whose panels follow the 1/w^3 tail to 1e9 G. At T = 0, with y = Gt,
+ *   Re g0 = (2 lambda / pi G) { gamma_E + ln y + [e^y E_1(y) - e^{-y} Ei(y)]/2 }
  *
  * Source: Mukamel, Principles of Nonlinear Optical Spectroscopy (1995), eqs. 8.48 to 8.49; sums by NIST Handbook (2010), 5.7.6 and
  * 5.5.4. Accuracy: 1e-13 relative to max(1, |g0|) (tests/engine/overdamped.spec.ts).
@@ -21,7 +22,8 @@
 import type { OverdampedTerm } from '../../schemas/parameter-set'
 import { angularFrequencyOf } from '../constants'
 import { digammaExcess } from '../digamma'
-import type { ClosedForm, Continuum, DensityIntegrals } from './continuum'
+import { EULER_GAMMA, exponentialSeries, scaledE1, scaledEi } from '../exponential-integral'
+import type { ClosedForm, Continuum, DensityIntegrals, PointBroadening } from './continuum'
 
 /** e^{-0.6 n} < 1e-16 from n = 62 on. */
 export const MATSUBARA_FROM = 0.6
@@ -75,9 +77,25 @@ const exponentialExcess = (y: number): number => {
   return sum
 }
 
+/** g0 at T = 0. Below y = 1 the logarithms of both integrals are joined: (gamma + ln y)(1 - cosh y) is free of cancellation. */
+const coldBroadening =
+  (lambda: number, relaxation: number): PointBroadening =>
+  (time, out) => {
+    const y = relaxation * time
+    if (!(y > 0)) return
+    const half = Math.sinh(y / 2)
+    const bracket =
+      y < 1
+        ? -2 * (EULER_GAMMA + Math.log(y)) * half * half -
+          (Math.exp(y) * exponentialSeries(-y) + Math.exp(-y) * exponentialSeries(y)) / 2
+        : EULER_GAMMA + Math.log(y) + (scaledE1(y) - scaledEi(y)) / 2
+    out[0]! += ((2 * lambda) / (Math.PI * relaxation)) * bracket
+    out[1]! -= (lambda / relaxation) * Math.expm1(-y)
+  }
+
 export const overdampedClosedForm = (term: OverdampedTerm, th: number): ClosedForm | undefined => {
-  if (!(th > 0)) return undefined
   const { lambda, relaxation } = rates(term)
+  if (!(th > 0)) return { from: 0, addAt: coldBroadening(lambda, relaxation) }
   const matsubara = 2 * Math.PI * th
   const x = relaxation / matsubara
   const m = Math.round(x)

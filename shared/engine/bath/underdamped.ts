@@ -20,13 +20,12 @@ import Complex from 'complex.js'
 import type { UnderdampedTerm } from '../../schemas/parameter-set'
 import { digamma } from '../complex-functions'
 import { angularFrequencyOf } from '../constants'
+import { EULER_GAMMA } from '../exponential-integral'
 import { buildFrequencyPanels } from '../frequency-panels'
 import type { ClosedForm, Continuum, DampedOscillation, DensityIntegrals } from './continuum'
 import { MATSUBARA_FROM, MATSUBARA_TERMS } from './overdamped'
 
 type ComplexNumber = InstanceType<typeof Complex>
-
-const EULER_GAMMA = 0.5772156649015329
 
 const rates = (term: UnderdampedTerm) => {
   const frequency = angularFrequencyOf(term.energyMeV)

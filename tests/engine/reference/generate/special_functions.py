@@ -49,6 +49,10 @@ for _ in range(40):
     x = spread(-2, 2.1)
     cases.append({"function": "gamma", "argument": [x, 0], "value": [float(mpmath.gamma(x)), 0]})
 for _ in range(60):
+    y = spread(-5, 3)
+    cases.append({"function": "scaledE1", "argument": [y, 0], "value": [float(mpmath.exp(y) * mpmath.e1(y)), 0]})
+    cases.append({"function": "scaledEi", "argument": [y, 0], "value": [float(mpmath.exp(-y) * mpmath.ei(y)), 0]})
+for _ in range(60):
     m, z = random.randint(0, 60), spread(-6, 5)
     value = mpmath.exp(-mpf(z)) * mpmath.besseli(m, mpf(z))
     cases.append({"function": "besselI", "order": m, "argument": [z, 0], "value": [float(value), 0]})

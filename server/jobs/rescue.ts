@@ -1,8 +1,8 @@
 import { performance } from 'node:perf_hooks'
 import { setTimeout as sleep } from 'node:timers/promises'
 import { getDatabase } from '../database/client'
-import { isDatabaseDown } from '../database/outage'
-import { listAttempts } from '../database/repositories/run-attempts.repository'
+import { databaseCodeOf, isDatabaseDown } from '../database/outage'
+import { listAttempts, type AttemptRow } from '../database/repositories/run-attempts.repository'
 import { rescueRun } from '../services/run-execution.service'
 import { reconcileRuns } from '../services/run-reconcile.service'
 import { logger } from '../utils/logger'
@@ -11,6 +11,18 @@ import { isKnownDead } from './worker-identity'
 
 /** Compares the runs with the queue this often; the two can only differ after a restore or a hand-made change. */
 const reconcileMs = 10 * 60 * 1000
+
+const lockNotAvailable = '55P03'
+
+/** A process that froze in the middle of a transaction may still hold the run's row: that run is left for the next look. */
+const rescue = async (attempt: AttemptRow, isLost: (silentMs: number) => boolean): Promise<void> => {
+  try {
+    if (!(await rescueRun(attempt, isLost))) return
+    logger.warn({ event: 'run.rescued', runId: attempt.runId, attempt: attempt.attempt, worker: attempt.workerId })
+  } catch (error) {
+    if (databaseCodeOf(error) !== lockNotAvailable) throw error
+  }
+}
 
 /**
  * Looks for attempts whose process is gone. After an outage of the database every heartbeat is old although everybody
@@ -31,10 +43,7 @@ export const startRescuer = (settings: JobSettings): { stop: () => Promise<void>
     for (const attempt of attempts) {
       const dead = isKnownDead(attempt.workerId)
       const isLost = (silentMs: number) => dead || (silenceCounts && silentMs > settings.heartbeatStaleMs)
-      if (!isLost(attempt.silentMs)) continue
-      if (await rescueRun(attempt, isLost)) {
-        logger.warn({ event: 'run.rescued', runId: attempt.runId, attempt: attempt.attempt, worker: attempt.workerId })
-      }
+      if (isLost(attempt.silentMs)) await rescue(attempt, isLost)
     }
     if (reconciledAt === undefined || now - reconciledAt > reconcileMs) {
       await reconcileRuns()

@@ -46,5 +46,7 @@ if (!process.env.DATABASE_URL) {
 // Waiting for a database that is not there yet leaves nothing else that would keep this process alive.
 const alive = setInterval(() => undefined, 60_000)
 await startQueue()
-if (!ending) consumer = startConsumer({ directory: new URL('./', import.meta.url) })
+// The thread entries lie beside this file, unless WORKERS_DIR names another place.
+const directory = process.env.WORKERS_DIR ? undefined : new URL('./', import.meta.url)
+if (!ending) consumer = startConsumer({ directory })
 clearInterval(alive)

@@ -2,6 +2,7 @@ import { defineNitroPlugin, useRuntimeConfig } from 'nitropack/runtime'
 import { stopListening } from '../database/notifications'
 import { startConsumer, type Consumer } from '../jobs/consume'
 import { startQueue, stopQueue } from '../jobs/queue'
+import { closeRunStreams } from '../services/run-streams.service'
 import { logger } from '../utils/logger'
 import { isShuttingDown, onShutdown } from '../utils/shutdown'
 
@@ -19,6 +20,7 @@ export default defineNitroPlugin(() => {
     await consumer?.stop()
     await stopQueue()
   })
+  onShutdown('event streams', closeRunStreams)
   onShutdown('notices', stopListening, 'close')
   // After this module graph is evaluated: only then are addresses beside the server's entry known.
   setImmediate(() => {

@@ -191,6 +191,7 @@ export const rescueRun = (
   isLost: (silentMs: number) => boolean,
 ): Promise<boolean> =>
   withGroup(attempt.groupId, async (tx, client) => {
+    await client.query(`set local lock_timeout = '1s'`)
     const run = await lockRun(tx, attempt.groupId, attempt.runId)
     const silentMs = await lockAttempt(tx, attempt.runId, attempt.attempt)
     if (silentMs === null || !isLost(silentMs)) return false

@@ -63,6 +63,7 @@ export const openEventStream = (event: H3Event): EventStream => {
   res.writeHead(200, {
     'content-type': 'text/event-stream',
     'cache-control': 'no-store',
+    connection: 'close',
     // Proxies would otherwise collect events until a buffer is full.
     'x-accel-buffering': 'no',
   })

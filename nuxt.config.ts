@@ -88,7 +88,7 @@ export default defineNuxtConfig({
     },
     // nuxt-auth-utils brings GET and DELETE /api/_auth/session. Sessions have one entrance here: /api/session.
     'nitro:config': (config) => {
-      config.handlers = config.handlers?.filter((handler) => handler.route !== '/api/_auth/session')
+      config.handlers = config.handlers?.filter((handler) => handler?.route !== '/api/_auth/session')
     },
   },
   alias: { '#engine': here('./shared/engine') },

@@ -11,6 +11,15 @@ export default defineNuxtModule({
   meta: { name: 'server-extras' },
   setup(_options, nuxt) {
     const root = nuxt.options.rootDir
+    // The types of the routes would pull the server's modules into the page's program, where its globals are not those
+    // of the server. The page knows the answers by app/types/api.ts. The framework adds the reference late, so this
+    // takes it out later still.
+    nuxt.hook('ready', () => {
+      nuxt.hook('prepare:types', ({ references }) => {
+        const at = references.findIndex((entry) => 'path' in entry && /\/nitro\.d\.ts$/.test(entry.path))
+        if (at >= 0) references.splice(at, 1)
+      })
+    })
     nuxt.hook('nitro:init', (nitro) => {
       let pending = Promise.resolve()
       const emit = () => {

@@ -13,7 +13,7 @@
  * Source: Poisson summation; Davis & Rabinowitz, Methods of Numerical Integration, 2nd ed. (1984), 2.9. Brings the sampled
  * map from second order in dt to fourth (tests/engine/edge-correction.spec.ts).
  */
-import { fftPlan, inverseFft } from './fft'
+import { transformBatch } from './kernel/batch-transform'
 import type { MapBins } from './map'
 import type { SignalTables } from './map-tables'
 import type { ComplexSeries } from './types'
@@ -119,17 +119,13 @@ export const edgesOf = (tables: SignalTables): Edges | undefined => {
   return { along3, along1: along(false), corner }
 }
 
-/** Trapezoid transforms exp(+i ...) of edges at all bins of the padded transform. */
-const edgeSpectra = (edges: ComplexSeries[], padded: number): ComplexSeries[] =>
-  edges.map((edge) => {
-    const re = new Float64Array(padded)
-    const im = new Float64Array(padded)
-    re.set(edge.re)
-    im.set(edge.im)
-    re[0]! /= 2
-    im[0]! /= 2
-    inverseFft(re, im, fftPlan(padded))
-    return { re, im }
+/** Edges with the half weight of their first sample. */
+const weighted = (edges: ComplexSeries[]): ComplexSeries[] =>
+  edges.map(({ re, im }) => {
+    const out = { re: re.slice(), im: im.slice() }
+    out.re[0]! /= 2
+    out.im[0]! /= 2
+    return out
   })
 
 /** The correction is sum_k left_k(m1) right_k(m3), twice `ORDERS` products: [k][point]. */
@@ -150,14 +146,22 @@ export const edgeCorrection = (tables: SignalTables, padded: number): EdgeCorrec
   const edges = edgesOf(tables)
   if (!edges) return undefined
   const { stepPs, rephasing } = tables
-  const on3 = edgeSpectra(edges.along3, padded)
-  const on1 = edgeSpectra(edges.along1, padded)
+  const lines = [...weighted(edges.along3), ...weighted(edges.along1)]
   const unit = (2 * Math.PI) / (padded * stepPs)
   const wrap = (bin: number) => ((bin % padded) + padded) % padded
   const turn = rephasing ? -1 : 1
 
   /** -A1 (T3 - A3) - T1 A3, written as products. */
   const products = (m1: ArrayLike<number>, m3: ArrayLike<number>): Products => {
+    const places3 = Int32Array.from(m3, wrap)
+    const places1 = Int32Array.from(m1, (bin) => wrap(turn * bin))
+    const spectra = transformBatch(
+      lines,
+      padded,
+      lines.map((_, k) => (k < ORDERS ? places3 : places1)),
+    )
+    const on3 = spectra.slice(0, ORDERS)
+    const on1 = spectra.slice(ORDERS)
     const left = Array.from({ length: 2 * ORDERS }, () => seriesOf(m1.length))
     const right = Array.from({ length: 2 * ORDERS }, () => seriesOf(m3.length))
     for (let i = 0; i < m1.length; i++) {
@@ -165,16 +169,15 @@ export const edgeCorrection = (tables: SignalTables, padded: number): EdgeCorrec
       imageFactors(bin * unit, stepPs).forEach(([re, im], order) => {
         left[order]!.re[i] = -re
         left[order]!.im[i] = -im
-        left[ORDERS + order]!.re[i] = on1[order]!.re[wrap(bin)]!
-        left[ORDERS + order]!.im[i] = on1[order]!.im[wrap(bin)]!
+        left[ORDERS + order]!.re[i] = on1[order]!.re[i]!
+        left[ORDERS + order]!.im[i] = on1[order]!.im[i]!
       })
     }
     for (let i = 0; i < m3.length; i++) {
-      const place = wrap(m3[i]!)
       const factors = imageFactors(m3[i]! * unit, stepPs)
       for (let order = 0; order < ORDERS; order++) {
-        let a = on3[order]!.re[place]!
-        let b = on3[order]!.im[place]!
+        let a = on3[order]!.re[i]!
+        let b = on3[order]!.im[i]!
         factors.forEach(([fr, fi], inner) => {
           const [cr, ci] = edges.corner[order]![inner]!
           a -= fr * cr - fi * ci

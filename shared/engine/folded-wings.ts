@@ -2,13 +2,13 @@
  * Lorentzian wings that a sampled linear spectrum folds back into its span.
  *
  * Sampling with step dt adds every image A(E + m Omega), m != 0, Omega = 2 pi hbar/dt. Far from the line
- *   A(y) = (h/pi) [1/(y-m1)^2 + 3 m2/(y-m1)^4 + 4 m3/(y-m1)^5 + ...],  h = hbar gam,
+ *   A(y) = (h/pi) [1/(y-m1)^2 + (3 m2 - h^2)/(y-m1)^4 + 4 m3/(y-m1)^5 + ...],  h = hbar gam,
  * with the mean m1, variance m2 and third central moment m3 of the spectrum without gam. The sums over m are
  *   sum 1/(y + m Omega)^2 = (pi/Omega)^2 f(z),  f(z) = 1/sin^2 z - 1/z^2,  z = pi (y - m1)/Omega,
  * and its second and third derivatives. The constant h dt^2/(12 pi hbar^2) of the plain trapezoid is the term z = 0.
  *
  * Derivation: Poisson summation; the same numbers follow from the Euler-Maclaurin end terms (Davis & Rabinowitz, Methods of
- * Numerical Integration, 2nd ed. 1984, 2.9). What is left is of relative order h^2/Omega^2 and of the fourth moment.
+ * Numerical Integration, 2nd ed. 1984, 2.9). What is left is the fourth moment.
  */
 
 export interface WingMoments {
@@ -46,7 +46,8 @@ export const foldedWings = (offsetMeV: number, spanMeV: number, halfWidthMeV: nu
   if (halfWidthMeV === 0) return 0
   const unit = Math.PI / spanMeV
   wingTerms((offsetMeV - moments.mean) * unit, terms)
+  const second = moments.variance - (halfWidthMeV * halfWidthMeV) / 3
   const sum =
-    terms[0]! + ((moments.variance * unit * unit) / 2) * terms[1]! - ((moments.third * unit ** 3) / 6) * terms[2]!
+    terms[0]! + ((second * unit * unit) / 2) * terms[1]! - ((moments.third * unit ** 3) / 6) * terms[2]!
   return (halfWidthMeV / Math.PI) * unit * unit * sum
 }

@@ -14,7 +14,7 @@
  * Algorithm: the real part of the transform of a one-sided signal is the transform of its Hermitian part, so one complex
  * transform of half the length gives A (Cooley, Lewis & Welch 1970). A sampled signal gives the sum of A over all
  * multiples of the span; phonon sidebands end inside the span by the choice of the grid, the Lorentzian wings do not
- * and are taken out with `foldedWings`. Accuracy at the engine's own grid: 1e-8 of the maximum (tests/engine/linear.spec.ts).
+ * and are taken out with `foldedWings`. Accuracy at the engine's own grid: 5e-9 of the maximum (tests/engine/linear.spec.ts).
  */
 import { ensembleSigma, homogeneousRate } from './coherence-decay'
 import { HBAR_MEV_PS } from './constants'

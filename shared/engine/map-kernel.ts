@@ -10,7 +10,7 @@ import { plainMap, plainMaps, type MapBins } from './map'
 import type { MapTables, SignalTables } from './map-tables'
 import type { ComplexSeries } from './types'
 
-/** Complex map of one signal, ps^2, row-major [E1][E3]. Polls `stop`; a stopped map is incomplete. */
+/** Complex map of one signal, ps^2, row-major [E1][E3]. Polls `stop`; a stopped map is zero. */
 export const signalMap = (tables: SignalTables, bins: MapBins, stop?: () => boolean): ComplexSeries => {
   const kernel = loadKernel()
   return kernel && tables.factors ? kernelMap(kernel, tables, bins, stop) : plainMap(tables, bins, stop)

@@ -35,7 +35,13 @@ export const wrappedBin = (i: number, { padded, halfBins, stride }: MapBins): nu
   return bin < 0 ? bin + padded : bin
 }
 
-/** Plain kernel for one signal. `stop` is polled once every 64 rows; true leaves the result incomplete. */
+/** What a map that was told to stop returns: zeros. */
+export const stoppedMap = (count: number): ComplexSeries => ({
+  re: new Float64Array(count * count),
+  im: new Float64Array(count * count),
+})
+
+/** Plain kernel for one signal. `stop` is polled once every 64 rows; true ends the work with zeros. */
 export const plainMap = (tables: SignalTables, bins: MapBins, stop: () => boolean = () => false): ComplexSeries => {
   const { samples: n, rephasing } = tables
   const { padded } = bins
@@ -47,7 +53,7 @@ export const plainMap = (tables: SignalTables, bins: MapBins, stop: () => boolea
   const middleRe = new Float64Array(n * count)
   const middleIm = new Float64Array(n * count)
   for (let i = 0; i < n; i++) {
-    if (i % 64 === 0 && stop()) break
+    if (i % 64 === 0 && stop()) return stoppedMap(count)
     signalRow(tables, i, { re, im })
     re.fill(0, n)
     im.fill(0, n)
@@ -60,7 +66,7 @@ export const plainMap = (tables: SignalTables, bins: MapBins, stop: () => boolea
   const out = { re: new Float64Array(count * count), im: new Float64Array(count * count) }
   const transform = rephasing ? forwardFft : inverseFft
   for (let k = 0; k < count; k++) {
-    if (k % 64 === 0 && stop()) break
+    if (k % 64 === 0 && stop()) return stoppedMap(count)
     re.set(middleRe.subarray(k * n, (k + 1) * n))
     im.set(middleIm.subarray(k * n, (k + 1) * n))
     re.fill(0, n)

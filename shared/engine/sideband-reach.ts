@@ -27,11 +27,11 @@ export interface SidebandReach {
 const POINTS_PER_E = 12
 const OCTAVE_STEPS = 2
 
-/** Phonon energies (meV) with the weights of cosh - 1 and of sinh. */
+/** Phonon energies (meV) with their Huang-Rhys weights S and the thermal part 2 n S. */
 const spectralLines = (model: LineModel) => {
   const energies: number[] = []
-  const even: number[] = []
-  const odd: number[] = []
+  const cold: number[] = []
+  const hot: number[] = []
   const th = thermalFrequencyOf(model.temperatureK)
   for (const term of model.bath) {
     const { density, lowScale, reach } = toContinuum(term)
@@ -41,21 +41,22 @@ const spectralLines = (model: LineModel) => {
     for (let i = 0; i <= count; i++) {
       const w = Math.exp(from + i * step)
       const weight = (density(w) / (Math.PI * w)) * step * (i === count ? 0.5 : 1)
+      if (!(weight > 0)) continue
       energies.push(w * HBAR_MEV_PS)
-      odd.push(weight)
-      even.push(th > 0 ? weight / Math.tanh(w / (2 * th)) : weight)
+      cold.push(weight)
+      hot.push(th > 0 ? (2 * weight) / Math.expm1(w / th) : 0)
     }
   }
   for (const mode of resolveModes(model.modes, model.temperatureK)) {
     energies.push(mode.frequency * HBAR_MEV_PS)
-    odd.push(mode.huangRhys)
-    even.push(mode.thermalHuangRhys)
+    cold.push(mode.huangRhys)
+    hot.push(mode.thermalHuangRhys - mode.huangRhys)
   }
-  return { energies: Float64Array.from(energies), even: Float64Array.from(even), odd: Float64Array.from(odd) }
+  return { energies: Float64Array.from(energies), cold: Float64Array.from(cold), hot: Float64Array.from(hot) }
 }
 
 export const sidebandReach = (model: LineModel): SidebandReach => {
-  const { energies, even, odd } = spectralLines(model)
+  const { energies, cold, hot } = spectralLines(model)
   const sigma = model.ensembleFwhmMeV / GAUSSIAN_FWHM_PER_SIGMA
   const scale = Math.max(
     energies.reduce((a, b) => Math.max(a, b), 0),
@@ -66,22 +67,23 @@ export const sidebandReach = (model: LineModel): SidebandReach => {
   const slopes: number[] = []
   const upper: number[] = []
   const lower: number[] = []
-  for (let k = -10 * OCTAVE_STEPS; k <= 5 * OCTAVE_STEPS; k++) {
+  // A cold lower tail ends at E0: its bound falls as 1/s, so s goes far.
+  for (let k = -10 * OCTAVE_STEPS; k <= 12 * OCTAVE_STEPS; k++) {
     const s = 2 ** (k / OCTAVE_STEPS) / scale
-    let symmetric = 0
-    let skew = 0
-    for (let i = 0; i < energies.length; i++) {
-      const grown = Math.exp(energies[i]! * s)
-      const half = Math.expm1((energies[i]! * s) / 2)
-      // cosh x - 1 = (e^{x/2} - 1)^2 (e^{x/2} + 1)^2 / (2 e^x), free of cancellation.
-      const cosh = (half * half * (half + 2) * (half + 2)) / (2 * grown)
-      symmetric += even[i]! * cosh
-      skew += odd[i]! * (grown - 1 / grown) * 0.5
-    }
     const gaussian = (sigma * s * sigma * s) / 2
+    let up = gaussian
+    let down = gaussian
+    for (let i = 0; i < energies.length; i++) {
+      const rise = Math.expm1(energies[i]! * s)
+      const fall = Math.expm1(-energies[i]! * s)
+      // coth (cosh - 1) +- sinh = 2n (cosh - 1) + (e^{+-x} - 1), and 2 (cosh x - 1) = (e^x - 1) + (e^{-x} - 1).
+      const thermal = hot[i]! > 0 ? (hot[i]! * (rise + fall)) / 2 : 0
+      up += thermal + cold[i]! * rise
+      down += thermal + cold[i]! * fall
+    }
     slopes.push(s)
-    upper.push(symmetric + skew + gaussian)
-    lower.push(symmetric - skew + gaussian)
+    upper.push(up)
+    lower.push(down)
   }
   const reach = (cumulant: number[], mass: number): number => {
     let best = Infinity

@@ -17,7 +17,7 @@
  * Source: Siemens et al., Opt. Express 18, 17699 (2010), equations for the diagonal and cross-diagonal line shapes.
  */
 import { edgeCorrection } from './edge-correction'
-import { fftPlan, inverseFft } from './fft'
+import { transformBatch } from './kernel/batch-transform'
 import type { Factors, MapTables, SignalTables } from './map-tables'
 import { wrappedBin, type MapBins } from './map'
 import { bandSamples, projections } from './projection'
@@ -44,15 +44,8 @@ const keptTransform = (series: ComplexSeries, first: number, bins: MapBins): Com
     folded.re[place]! += series.re[j]!
     folded.im[place]! += series.im[j]!
   }
-  inverseFft(folded.re, folded.im, fftPlan(padded))
-  const count = 2 * bins.halfBins
-  const out = empty(count)
-  for (let i = 0; i < count; i++) {
-    const place = wrappedBin(i, bins)
-    out.re[i] = folded.re[place]!
-    out.im[i] = folded.im[place]!
-  }
-  return out
+  const places = Int32Array.from({ length: 2 * bins.halfBins }, (_, i) => wrappedBin(i, bins))
+  return transformBatch([folded], padded, [places])[0]!
 }
 
 export interface Slices {
@@ -103,8 +96,11 @@ export const reducedCrossDiagonal = (tables: SignalTables, bins: MapBins): Reduc
   const first = product(factors, 0, 0)
   const later = product(factors, apart, apart)
   const corner = [(4 * first[0]) / (sigStep * sigStep), (4 * first[1]) / (sigStep * sigStep)] as const
+  // The corner is flat only for |x| well below hbar sig: its slope in x was measured as 0.28 of this.
+  const tilt = (2 * Math.PI * bins.halfBins * bins.stride) / bins.padded / sigStep
   const cornerChange =
     Math.hypot(later[0] - 4 * first[0], later[1] - 4 * first[1]) / (sigStep * sigStep) +
+    tilt * Math.hypot(...corner) +
     // The trapezoid of a Gaussian of few samples, exact to exp(-2 pi^2/(sig dt)^2).
     scale * Math.hypot(first[0], first[1]) * Math.exp((-2 * Math.PI ** 2) / (sigStep * sigStep))
   const slice = keptTransform(signal, 0, bins)

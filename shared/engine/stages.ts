@@ -89,11 +89,19 @@ export const mapBins = ({ paddedSamples, halfBins, stride }: SpectralGrid): MapB
   stride,
 })
 
-/** Finer bins for slices, which cost one dimension only: four times the window at least, every point kept. */
+/** Points of a slice at most; fewer where the padded window already resolves the lines. */
+const SLICE_POINTS = 8192
+const SLICE_PADDING = 16
+
+/**
+ * Finer bins for slices, which cost one dimension only: sixteen times the window, so that x = E3 - E1, which runs in
+ * steps of two bins, still puts a dozen points on the narrowest line; every point kept.
+ */
 export const sliceBins = (grid: SpectralGrid): MapBins => {
-  const padded = Math.max(grid.paddedSamples, nextPowerOfTwo(4 * grid.samples))
-  const wanted = (grid.halfBins * grid.stride * padded) / grid.paddedSamples
-  return { padded, halfBins: Math.min(padded / 2, wanted), stride: 1 }
+  let padded = Math.max(grid.paddedSamples, nextPowerOfTwo(SLICE_PADDING * grid.samples))
+  const pointsOf = (length: number) => 2 * ((grid.halfBins * grid.stride * length) / grid.paddedSamples)
+  while (pointsOf(padded) > SLICE_POINTS && padded > grid.paddedSamples) padded /= 2
+  return { padded, halfBins: Math.min(padded, pointsOf(padded)) / 2, stride: 1 }
 }
 
 /** E - E0 of the kept bins. */

@@ -5,7 +5,7 @@
  * kernel has the sign +i only: the rephasing t1 axis, which has -i, is read at the mirrored bins.
  */
 import { isPowerOfTwo } from '../fft'
-import { wrappedBin, type MapBins } from '../map'
+import { stoppedMap, wrappedBin, type MapBins } from '../map'
 import type { SignalTables } from '../map-tables'
 import type { ComplexSeries } from '../types'
 import { KernelHeap, ROW_BYTES } from './kernel-memory'
@@ -48,14 +48,14 @@ export const kernelMap = (
   const im = heap.doubles(count * pitch)
 
   for (let first = 0; first < columns; first += 4) {
-    if (first % (4 * POLL_EVERY) === 0 && stop()) break
+    if (first % (4 * POLL_EVERY) === 0 && stop()) return stoppedMap(count)
     kernel.clearRows(buffer, plan.order, n, padded)
     kernel.fillProduct(buffer, plan.order, n, first, pr, pi, qr, qi, hr, hi, t)
     kernel.transform(buffer, padded, plan.twiddles)
     kernel.keepBins(buffer, middle, blockBytes, first, thirdPlaces, groups)
   }
   for (let group = 0; group < groups; group++) {
-    if (group % POLL_EVERY === 0 && stop()) break
+    if (group % POLL_EVERY === 0 && stop()) return stoppedMap(count)
     kernel.clearRows(buffer, plan.order, n, padded)
     kernel.gather(buffer, plan.order, middle + group * blockBytes, n)
     kernel.transform(buffer, padded, plan.twiddles)

@@ -59,13 +59,13 @@ export const parseBody = (bytes: Buffer): unknown => {
  * with its place instead of a database error. Keys named in `unstored` (passwords) never reach a text column.
  */
 export const findUnstorableText = (value: unknown, unstored: readonly string[], path: Issue['path'] = []): Issue[] => {
-  if (typeof value === 'string') {
-    if (!value.includes('\0') && value.isWellFormed()) return []
-    return [{ path, message: 'expected text without NUL characters and broken surrogate pairs; found one' }]
-  }
+  const wrong = (text: string) => text.includes('\0') || !text.isWellFormed()
+  const issue = { path, message: 'expected text without NUL characters and broken surrogate pairs; found one' }
+  if (typeof value === 'string') return wrong(value) ? [issue] : []
   if (Array.isArray(value)) return value.flatMap((item, index) => findUnstorableText(item, unstored, [...path, index]))
   if (typeof value !== 'object' || value === null) return []
-  return Object.entries(value).flatMap(([key, item]) =>
-    unstored.includes(key) ? [] : findUnstorableText(item, unstored, [...path, key]),
-  )
+  return Object.entries(value).flatMap(([key, item]) => {
+    if (wrong(key)) return [{ ...issue, path: [...path, key] }]
+    return unstored.includes(key) ? [] : findUnstorableText(item, unstored, [...path, key])
+  })
 }

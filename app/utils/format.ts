@@ -56,3 +56,14 @@ export const formatBytes = (bytes: number): string => {
 
 /** Every digit of a stored value, as it would be typed back, with a true minus sign. */
 export const formatExact = (value: number): string => String(value).replace(/^-/, minus)
+
+const mostCharacters = 10
+
+/** A stored value at rest in a narrow field: cut with an ellipsis where digits are left out; all of them on entry. */
+export const formatBrief = (value: number): string => {
+  const exact = formatExact(value)
+  if (exact.length <= mostCharacters) return exact
+  const [digits = '', exponent] = exact.split('e')
+  const room = mostCharacters - 1 - (exponent === undefined ? 0 : exponent.length + 1)
+  return `${digits.slice(0, room)}…${exponent === undefined ? '' : `e${exponent}`}`
+}

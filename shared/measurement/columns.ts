@@ -134,12 +134,12 @@ export const findRoles = (layout: Layout, labels: Labels, marks: Marks): ColumnR
   const roles = new Map(
     layout.numeric.map((index) => [index, roleOf(`${labels.names[index] ?? ''} ${labels.units[index] ?? ''}`.trim())]),
   )
-  if (layout.numeric.length >= 3) {
-    const first = layout.numeric[0] ?? 0
-    const hasOtherAxis = [...roles].some(([index, role]) => index !== first && role === 'axis')
-    const counts = isCounting(columnNumbers(layout, first, marks))
-    if (counts && (roles.get(first) === 'unknown' || hasOtherAxis)) roles.set(first, 'index')
-  }
+  const first = layout.numeric[0] ?? 0
+  const otherAxis = [...roles].some(([index, role]) => index !== first && role === 'axis')
+  const counts = layout.numeric.length >= 3 && isCounting(columnNumbers(layout, first, marks))
+  /** 1, 2, 3, … without a label: row numbers, most likely, but a person has to say so. */
+  const onlyCounts = counts && roles.get(first) === 'unknown' && !otherAxis
+  if (onlyCounts || (counts && otherAxis && roles.get(first) !== 'axis')) roles.set(first, 'index')
   const withRole = (role: Role) => layout.numeric.filter((index) => roles.get(index) === role)
   const questions: ReadingQuestion[] = []
   const choose = (
@@ -161,16 +161,6 @@ export const findRoles = (layout: Layout, labels: Labels, marks: Marks): ColumnR
     (index) => roles.get(index) !== 'uncertainty' && isMonotonic(columnNumbers(layout, index, marks)),
   )
   const axisColumn = named[0] ?? monotonic[0] ?? columns[0] ?? 0
-  const asAxis = (index: number) => ({ axisColumn: index })
-  if (named.length > 1) choose('axisColumn', 'Several columns can be the axis.', named, asAxis)
-  else if (named.length === 0 && axisColumn !== columns[0])
-    choose(
-      'axisColumn',
-      'The first column does not rise or fall steadily, so another may be the axis.',
-      columns,
-      asAxis,
-    )
-
   const values = columns.filter((index) => index !== axisColumn && roles.get(index) === 'value')
   const unknown = columns.filter((index) => index !== axisColumn && roles.get(index) === 'unknown')
   const otherAxes = named.filter((index) => index !== axisColumn)
@@ -187,6 +177,24 @@ export const findRoles = (layout: Layout, labels: Labels, marks: Marks): ColumnR
   }
   const uncertaintyColumn = uncertaintyOf(valueColumn)
 
+  // The column that becomes the axis cannot stay the value or the uncertainty.
+  const asAxis = (index: number) => ({
+    axisColumn: index,
+    ...(index === valueColumn ? { valueColumn: axisColumn } : {}),
+    ...(index === uncertaintyColumn ? { uncertaintyColumn: null } : {}),
+  })
+  if (onlyCounts)
+    choose('axisColumn', 'The first column only counts the rows.', [axisColumn, first], (index) =>
+      index === first ? { axisColumn: first, valueColumn: columns[0], uncertaintyColumn: null } : { axisColumn: index },
+    )
+  else if (named.length > 1) choose('axisColumn', 'Several columns can be the axis.', named, asAxis)
+  else if (named.length === 0 && axisColumn !== columns[0])
+    choose(
+      'axisColumn',
+      'The first column does not rise or fall steadily, so another may be the axis.',
+      columns,
+      asAxis,
+    )
   if (values.length === 0 && unknown.length === 2 && uncertaintyColumn === null && columns.length === 3) {
     const [value = 1, other = 2] = unknown
     questions.push({

@@ -79,11 +79,15 @@ export const readPoints = (source: ByteSource, reading: TableReading, options: P
     }
     // Rows may differ in empty fields at the end only.
     if (fields.length < firstFilled || filled > width)
-      throw unreadable({ line }, `${filled} fields in ${quote(text.trim())}`, `${width} columns as in the rows before`)
+      throw unreadable(
+        { line },
+        `${filled} ${filled === 1 ? 'field' : 'fields'} in ${quote(text.trim())}`,
+        `${width} columns as in the rows before`,
+      )
     if (Math.max(...columns) >= fields.length)
       throw unreadable(
         { line },
-        `${fields.length} columns`,
+        fields.length === 1 ? '1 column' : `${fields.length} columns`,
         `at least ${Math.max(...columns) + 1}, as the reading asks`,
       )
     if (sample.length < sampleRows) sample.push(fields.slice(0, limits.tableColumns).map((field) => field.slice(0, 40)))

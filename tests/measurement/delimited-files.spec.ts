@@ -3,7 +3,7 @@ import { describe, expect, it } from 'vitest'
 import { AppError } from '../../shared/errors/app-error'
 import { proposeTable } from '../../shared/measurement/propose-table'
 import { readTable } from '../../shared/measurement/read-table'
-import type { ReadingQuestion, TableReading } from '../../shared/schemas/measurement'
+import { TableReadingSchema, type ReadingQuestion, type TableReading } from '../../shared/schemas/measurement'
 
 /**
  * Files written by other software (see fixtures/generate.py) in the notations that laboratories meet. The rule: right,
@@ -104,6 +104,13 @@ describe('delimited files of other software', () => {
       }
     },
   )
+
+  it.each(cases.filter((entry) => !entry.refused))('$file gets choices that all are valid readings', (entry) => {
+    const { reading, needsAnswer } = proposeTable(bytesOf(entry))
+    for (const { choices } of needsAnswer)
+      for (const { label, change } of choices)
+        expect(TableReadingSchema.safeParse({ ...reading, ...change }).error?.issues ?? [], label).toEqual([])
+  })
 
   it.each(clear.filter((entry) => !entry.refused && !entry.unanswerable))('$file needs no question', (entry) => {
     const questions = proposeTable(bytesOf(entry)).needsAnswer.map(({ field }) => field)

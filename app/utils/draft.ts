@@ -1,3 +1,4 @@
+import { toRaw } from 'vue'
 import type { ParameterSet } from '#shared/schemas/parameter-set'
 
 /**

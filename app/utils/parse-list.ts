@@ -37,7 +37,8 @@ export const parseList = (text: string, quantity: Quantity): (number | string)[]
   if (range.test(whole)) return expand(whole, quantity)
   const items = cut(text)
   const last = items.at(-1) ?? ''
-  const shared = items.slice(0, -1).every((item) => unitOf(item) === '') ? unitOf(last) : ''
+  const isOnlyUnit = items.slice(0, -1).every((item) => unitOf(item) === '')
+  const shared = isOnlyUnit && parseQuantity(last, quantity).ok ? unitOf(last) : ''
   return items.map((item) => {
     const parsed = parseQuantity(unitOf(item) || !shared ? item : `${item} ${shared}`, quantity)
     return parsed.ok ? parsed.value : item

@@ -42,6 +42,7 @@ const nuxtProject = async () =>
     test: {
       name: 'nuxt',
       include: ['tests/nuxt/**/*.spec.ts'],
+      setupFiles: ['tests/nuxt/setup.ts'],
       environment: 'nuxt',
       environmentOptions: { nuxt: { domEnvironment: 'happy-dom' } },
       testTimeout: 60_000,

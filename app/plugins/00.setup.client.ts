@@ -1,5 +1,3 @@
-import '~/utils/zod-jitless'
-
 export default defineNuxtPlugin(() => {
   const workingSets = useWorkingSetStore()
   window.addEventListener('beforeunload', (event) => {

@@ -12,5 +12,6 @@ export const localEnvironment = ({ DATABASE_URL, DATABASE_OWNER_URL }, { port })
   DATABASE_OWNER_URL,
   NUXT_BASE_URL: process.env.NUXT_BASE_URL ?? `http://127.0.0.1:${port}`,
   NUXT_STORAGE_DIR: process.env.NUXT_STORAGE_DIR ?? inData('files'),
+  LOG_LEVEL: process.env.LOG_LEVEL ?? 'warn',
   NUXT_SESSION_PASSWORD: process.env.NUXT_SESSION_PASSWORD ?? keepSecret(inData('secrets', 'session-password')),
 })

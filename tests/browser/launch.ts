@@ -52,7 +52,9 @@ export const openPage = async (browser: Browser, options: PageOptions): Promise<
   context.setDefaultTimeout(20_000)
   await context.addInitScript(() => {
     addEventListener('securitypolicyviolation', (event) => {
-      console.error(`content security policy: ${event.violatedDirective} refused ${event.blockedURI}`)
+      console.error(
+        `content security policy: ${event.violatedDirective} refused ${event.blockedURI} at ${event.sourceFile}:${event.lineNumber}:${event.columnNumber}`,
+      )
     })
   })
   const page = await context.newPage()

@@ -24,7 +24,7 @@ interface Stream {
   sent: Map<string, number>
 }
 
-const checkMs = 4000
+const checkMs = 2500
 /** Changes become visible when their transaction commits, a little after the moment that they carry. */
 const overlapMs = 5000
 const rememberedRuns = 5000

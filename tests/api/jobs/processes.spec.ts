@@ -6,6 +6,9 @@ import { withGroup } from '../../../server/database/with-group'
 import { startQueue, stopQueue } from '../../../server/jobs/queue'
 import { cancelRun, createRun, getRun } from '../../../server/services/runs.service'
 import { startServer, type BuiltServer } from '../../support/server'
+import { Client } from '../support/client'
+import { createGroup, register } from '../support/people'
+import { openEvents } from './event-source'
 import { cpuMsOf, quickTimes, startWorker, type WorkerProcess } from './processes'
 import { openProxy, type DatabaseProxy } from './proxy'
 import { compileTrialWorkers, openWorkbench, until, type Workbench } from './workbench'
@@ -185,6 +188,25 @@ describe('SIGTERM', () => {
     expect(performance.now() - begun).toBeLessThan(10_000)
     expect(await getRun(groupId, run.id)).toMatchObject({ state: 'queued', attempt: 1 })
     await cancelRun(groupId, run.id)
+  })
+})
+
+describe('SIGTERM with open streams', () => {
+  it('ends the streams at once and does not wait for them', async () => {
+    const server = await startWeb()
+    const reader = await register('Reader', new Client(server.baseUrl))
+    const group = await createGroup(reader, 'Readers')
+    const streams = await Promise.all(Array.from({ length: 5 }, () => openEvents(reader.client, group)))
+    const begun = performance.now()
+    const stopped = server.stop('SIGTERM')
+    await until(
+      () => streams.every((stream) => stream.isClosed()),
+      (over) => over,
+      3000,
+    )
+    expect(await stopped).toBe(0)
+    // With a stream left open the web server would wait for its whole deadline of eight seconds.
+    expect(performance.now() - begun).toBeLessThan(5000)
   })
 })
 

@@ -14,12 +14,10 @@ export interface EdgePaths {
 }
 
 /** Place of a value across an edge panel, 0..1, on the same scale as the colours. */
-const depthOf = (layout: MapLayout, range: Range): ((value: number) => number) => {
-  const { toShare } = layout.values
-  const low = toShare(range.low)
-  const span = toShare(range.high) - low
-  return (value) => (toShare(value) - low) / span
-}
+const depthOf =
+  (layout: MapLayout, shares: Range): ((value: number) => number) =>
+  (value) =>
+    (layout.values.toShare(value) - shares.low) / (shares.high - shares.low)
 
 const isInside = (value: number, range: Range): boolean => value >= range.low && value <= range.high
 
@@ -36,8 +34,8 @@ const zeroLines = (top: Box, right: Box, zero: number): string => {
 export const edgePaths = (figure: MapFigure, layout: MapLayout, place: MapPlace): EdgePaths => {
   const paths = { top: '', right: '', zero: '' }
   if (!layout.edges || figure.values.length === 0) return paths
-  const { top, right, valueRange } = layout.edges
-  const depth = depthOf(layout, valueRange)
+  const { top, right, shares } = layout.edges
+  const depth = depthOf(layout, shares)
   const { energies1, energies3, values } = figure
   const columns = energies3.length
   const i0 = nearestSample(energies1, place.energy1)

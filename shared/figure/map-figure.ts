@@ -24,8 +24,10 @@ const imageElement = (image: unknown, left: number, top: number, width: number, 
 
 /** Pixel centres stand at the samples, so the image reaches half a step beyond the first and the last one. */
 const mapImage = (part: MapPart, layout: MapLayout, figure: MapFigure, toImage: ImageSource) => {
+  // Interpolated as it is, then compressed: the other way round, sign changes would show the grid.
   const fine = paintable(part)
-  const image = toImage(paintMap(fine, { low: figure.signed ? -1 : 0, high: 1 }, figure.signed, layout.style.mode))
+  const shares = { ...fine, values: fine.values.map(layout.values.toShare) }
+  const image = toImage(paintMap(shares, { low: figure.signed ? -1 : 0, high: 1 }, figure.signed, layout.style.mode))
   const topLeft = toMapPixel(layout, {
     energy1: fine.start1 - fine.step1 / 2,
     energy3: fine.start3 + (fine.count3 - 0.5) * fine.step3,
@@ -41,7 +43,7 @@ const mapImage = (part: MapPart, layout: MapLayout, figure: MapFigure, toImage: 
 const contourElements = (part: MapPart, layout: MapLayout, figure: MapFigure): unknown[] => {
   const steps = figure.contourSteps ?? defaultContourSteps
   const coarse = contourable(part)
-  const levels = contourLevels(1, steps, figure.signed)
+  const levels = contourLevels(1, steps, figure.signed).map(layout.values.fromShare)
   const paths = { above: '', below: '' }
   for (const { level, lines } of traceContours(coarse, levels)) {
     const side = level < 0 ? 'below' : 'above'
@@ -175,9 +177,7 @@ const barLabels = (layout: MapLayout, figure: MapFigure): unknown[] => {
 export const mapFigureOption = (figure: MapFigure, frame: FigureFrame, toImage: ImageSource): ChartOption => {
   const layout = mapLayout(figure, frame)
   const { box, bar, style } = layout
-  const seen = visiblePart(figure)
-  // Painted and traced is the share of the reach, so that both kinds of scale take one road.
-  const part = { ...seen, values: seen.values.map(layout.values.toShare) }
+  const part = visiblePart(figure)
   const axis = { x: 0, y: 0 }
   const isEmpty = part.count1 < 2 || part.count3 < 2
   return {

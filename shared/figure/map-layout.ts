@@ -10,8 +10,8 @@ export interface MapLayout {
   style: FigureStyle
   box: Box
   bar: Box
-  /** Panels of the edge slices; null when the map carries none. */
-  edges: { top: Box; right: Box; valueRange: Range } | null
+  /** Panels of the edge slices and the shares of the reach across them; null when the map carries none. */
+  edges: { top: Box; right: Box; shares: Range } | null
   range1: Range
   range3: Range
   ticks1: AxisTicks
@@ -73,17 +73,17 @@ export const squareSize = (
   }
 }
 
-/** Values that the edge slices span: those of the whole map, so that slices keep their scale while the place moves. */
-const edgeRange = (figure: MapFigure, valueRange: Range): Range => {
+/** What the edge slices span: the values of the whole map, so that slices keep their scale while the place moves. */
+const edgeShares = (figure: MapFigure, { toShare, range }: ValueScale): Range => {
   let low = 0
   let high = 0
   for (const value of figure.values) {
     if (value < low) low = value
     if (value > high) high = value
   }
-  if (!(high > low)) return valueRange
-  const margin = 0.06 * (high - low)
-  return { low: low - margin, high: high + margin }
+  const [bottom, top] = low < high ? [toShare(low), toShare(high)] : [toShare(range.low), toShare(range.high)]
+  const margin = 0.06 * (top - bottom)
+  return { low: bottom - margin, high: top + margin }
 }
 
 /** Where everything of a map figure stands, in CSS pixels. The map is square; spare room stays on the right. */
@@ -100,7 +100,7 @@ export const mapLayout = (figure: MapFigure, frame: FigureFrame): MapLayout => {
     ? {
         top: { left: box.left, top: box.top - edge, width: side, height: depth },
         right: { left: box.left + side + edgeGap, top: box.top, width: depth, height: side },
-        valueRange: edgeRange(figure, rest.values.range),
+        shares: edgeShares(figure, rest.values),
       }
     : null
   return { ...rest, box, bar, edges }

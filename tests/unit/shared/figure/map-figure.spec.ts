@@ -68,7 +68,8 @@ describe('option of a map', () => {
     expect(values.toShare(2)).toBeCloseTo(1, 12)
     expect(values.toShare(-0.3)).toBeCloseTo(-values.toShare(0.3), 12)
     expect(values.toShare(0.02)).toBeGreaterThan(0.15)
-    expect(values.ticks.labels).toEqual(['−2', '−0.2', '−0.02', '0', '0.02', '0.2', '2'])
+    expect(values.fromShare(values.toShare(0.37))).toBeCloseTo(0.37, 12)
+    expect(values.ticks.labels).toEqual(['−2', '−1', '−0.1', '−0.01', '0', '0.01', '0.1', '1', '2'])
     expect(toBarPixel({ ...mapLayout(sampleMap({ scale: 'asinh', reach: 2 }), frame) }, -2)).toBe(bar.top + bar.height)
   })
 
@@ -216,9 +217,10 @@ describe('reading a map', () => {
     const layout = mapLayout(map, frame)
     const paths = edgePaths(map, layout, { energy1: 2000, energy3: 2000 })
     expect(paths.top.match(/[ML]/g)).toHaveLength(41)
-    const { top, valueRange } = layout.edges ?? { top: layout.box, valueRange: layout.values.range }
+    if (!layout.edges) throw new Error('expected panels on the edges')
+    const { top, shares } = layout.edges
     const heights = [...paths.top.matchAll(/[ML][\d.]+ ([\d.]+)/g)].map((match) => Number(match[1]))
-    const share = (Math.max(...map.values) - valueRange.low) / (valueRange.high - valueRange.low)
+    const share = (layout.values.toShare(Math.max(...map.values)) - shares.low) / (shares.high - shares.low)
     expect(Math.min(...heights)).toBeCloseTo(top.top + (1 - share) * top.height, 0)
   })
 

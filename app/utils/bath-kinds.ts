@@ -48,6 +48,27 @@ const kinds: Record<BathTerm['kind'], BathKind> = {
     formula: 'J(ω) = 2S ω_0^3 ωΓ / ((ω_0^2 − ω^2)^2 + ω^2Γ^2)',
     start: { kind: 'underdamped', huangRhys: 0.2, energyMeV: 10, dampingEnergyMeV: 1 },
   },
+  logNormal: {
+    name: 'log-normal sideband',
+    formula: 'J(ω) = S ω (π/2)^{1/2} s^{−1} exp(−ln^2(ω/ω_0) / 2s^2)',
+    start: { kind: 'logNormal', huangRhys: 0.2, energyMeV: 10, relativeWidth: 0.3 },
+  },
+  confinedExciton: {
+    name: 'confined exciton, acoustic phonons',
+    formula: 'J(ω) ∝ ω^3 [D_e exp(−ω^2 a_e^2/4v_L^2) − D_h exp(−ω^2 a_h^2/4v_L^2)]^2 + piezoelectric',
+    start: {
+      kind: 'confinedExciton',
+      densityKgPerM3: 5317,
+      longitudinalVelocityMPerS: 5088,
+      transverseVelocityMPerS: 2963,
+      electronShiftEV: -7,
+      holeShiftEV: 3.5,
+      electronLengthNm: 4,
+      holeLengthNm: 3.5,
+      piezoCoefficientCPerM2: 0.16,
+      relativePermittivity: 12.9,
+    },
+  },
 }
 
 const members = new Map(BathTermSchema.options.map((option) => [option.shape.kind.value as BathTerm['kind'], option]))

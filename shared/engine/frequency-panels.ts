@@ -16,6 +16,7 @@
 import type { Continuum, DensityIntegrals } from './bath/continuum'
 import { gaussLegendre, legendreAnalysis } from './gauss-legendre'
 import { sphericalBessel } from './spherical-bessel'
+import type { FrequencyNodes } from './uniform-sums'
 
 const TERMS = 20
 /** Panels below this w t go through the series; its first omitted term is then 5e-15. */
@@ -27,8 +28,12 @@ const POWER_LIMIT = 1
 const POWER_TERMS = 18
 
 export interface FrequencyPanels {
-  /** Adds g0(t), t >= 0, to out[0], out[1]. */
-  addAt: (timePs: number, out: Float64Array) => void
+  /** Adds g0(t), t >= 0, to out[0], out[1]; of the panels below index `end` only, when it is given. */
+  addAt: (timePs: number, out: Float64Array, end?: number) => void
+  /** Index of the first panel that starts at or above a frequency. */
+  indexAbove: (frequency: number) => number
+  /** Nodes and weights of the panels from index `begin` on, fine enough for plain sums up to a time. */
+  nodesFrom: (begin: number, longestPs: number) => FrequencyNodes
   /** Largest omitted Legendre coefficient, as a fraction of the largest kept one. */
   errorEstimate: number
   integrals: DensityIntegrals
@@ -148,17 +153,28 @@ export const buildFrequencyPanels = (terms: readonly Continuum[], th: number, lo
     largest = Math.max(largest, size * half)
     omitted = Math.max(omitted, tail * half)
   }
+  // Panels at the low end that together hold less than rounding of the largest one add nothing to g0 at any time.
+  let opening = 0
+  for (let below = 0; opening < count; opening++) {
+    below += Math.abs(thermal[opening * TERMS]!)
+    if (below > 1e-18 * largest) break
+  }
 
   const bessel = new Float64Array(TERMS)
-  const addAt = (time: number, out: Float64Array): void => {
-    let first = 0
-    while (first < count && edges[first + 1]! * time <= SERIES_LIMIT) first++
+  const addAt = (time: number, out: Float64Array, end = count): void => {
+    let first = opening
+    while (first < end && edges[first + 1]! * time <= SERIES_LIMIT) first++
     const t2 = time * time
     const row = first * SERIES_TERMS
-    let re =
-      (t2 / 2) * (even[row]! - (t2 / 12) * (even[row + 1]! - (t2 / 30) * (even[row + 2]! - (t2 / 56) * even[row + 3]!)))
-    let im = time * (odd[row]! - (t2 / 6) * (odd[row + 1]! - (t2 / 20) * (odd[row + 2]! - (t2 / 42) * odd[row + 3]!)))
-    for (let panel = first; panel < count; panel++) {
+    let re = 0
+    let im = 0
+    if (edges[first]! * time <= SERIES_LIMIT) {
+      const cosine = even[row + 1]! - (t2 / 30) * (even[row + 2]! - (t2 / 56) * even[row + 3]!)
+      const sine = odd[row + 1]! - (t2 / 20) * (odd[row + 2]! - (t2 / 42) * odd[row + 3]!)
+      re = (t2 / 2) * (even[row]! - (t2 / 12) * cosine)
+      im = time * (odd[row]! - (t2 / 6) * sine)
+    }
+    for (let panel = first; panel < end; panel++) {
       const x = halves[panel]! * time
       let evenThermal = 0
       let oddThermal = 0
@@ -197,6 +213,55 @@ export const buildFrequencyPanels = (terms: readonly Continuum[], th: number, lo
     out[1]! += im
   }
 
+  /** Values of both expansions of a panel at z, by Clenshaw's recurrence. */
+  const valueAt = (panel: number, z: number, coefficients: Float64Array): number => {
+    let later = 0
+    let value = 0
+    for (let n = TERMS - 1; n >= 0; n--) {
+      const sign = (n >> 1) % 2 === 0 ? 1 : -1
+      const next =
+        sign * coefficients[panel * TERMS + n]! + ((2 * n + 1) / (n + 1)) * z * value - ((n + 1) / (n + 2)) * later
+      later = value
+      value = next
+    }
+    return value / (2 * halves[panel]!)
+  }
+
+  const nodesFrom = (first: number, longest: number): FrequencyNodes => {
+    const begin = Math.max(first, opening)
+    const rules = Array.from({ length: count - begin }, (_, k) => {
+      const phase = halves[begin + k]! * longest
+      const pieces = Math.ceil(phase / 60)
+      // A rule of n nodes integrates e^{i phase z} beside 20 polynomials to rounding from n = phase/2 + 24 on.
+      return { panel: begin + k, pieces, rule: gaussLegendre(8 * Math.ceil((phase / pieces / 2 + 24) / 8)) }
+    })
+    const total = rules.reduce((sum, { pieces, rule }) => sum + pieces * rule.nodes.length, 0)
+    const out = {
+      frequencies: new Float64Array(total),
+      thermal: new Float64Array(total),
+      vacuum: new Float64Array(total),
+    }
+    let index = 0
+    for (const { panel, pieces, rule } of rules) {
+      for (let piece = 0; piece < pieces; piece++) {
+        for (let i = 0; i < rule.nodes.length; i++) {
+          const z = (2 * piece + 1 + rule.nodes[i]!) / pieces - 1
+          const weight = (halves[panel]! * rule.weights[i]!) / pieces
+          out.frequencies[index] = centres[panel]! + halves[panel]! * z
+          out.thermal[index] = weight * valueAt(panel, z, thermal)
+          out.vacuum[index] = weight * valueAt(panel, z, vacuum)
+          index++
+        }
+      }
+    }
+    return out
+  }
+  const indexAbove = (frequency: number): number => {
+    let index = 0
+    while (index < count && edges[index]! < frequency) index++
+    return index
+  }
+
   const last = count * SERIES_TERMS
   let plateau: number | null = 0
   for (const { low } of terms) {
@@ -209,6 +274,8 @@ export const buildFrequencyPanels = (terms: readonly Continuum[], th: number, lo
   if (plateau !== null) for (let panel = 0; panel < count; panel++) plateau += thermal[panel * TERMS]!
   return {
     addAt,
+    indexAbove,
+    nodesFrom,
     errorEstimate: largest > 0 ? omitted / largest : 0,
     integrals: {
       reorganization: odd[last]!,

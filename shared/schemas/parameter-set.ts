@@ -41,12 +41,34 @@ export const UnderdampedTermSchema = z
     })
   })
 
-const bathKinds = ['powerLaw', 'overdamped', 'underdamped'] as const
+/** J(w) = S w sqrt(pi/2)/s exp(-ln^2(w/w_0) / (2 s^2)): a log-normal sideband. */
+export const LogNormalTermSchema = z.strictObject({
+  kind: z.literal('logNormal'),
+  huangRhys: q(quantities.huangRhys),
+  energyMeV: q(quantities.modeEnergyMeV),
+  relativeWidth: q(quantities.relativeWidth),
+})
+
+/** Bulk acoustic phonons coupled to a confined exciton by deformation potential and piezoelectric field. */
+export const ConfinedExcitonTermSchema = z.strictObject({
+  kind: z.literal('confinedExciton'),
+  densityKgPerM3: q(quantities.densityKgPerM3),
+  longitudinalVelocityMPerS: q(quantities.longitudinalVelocityMPerS),
+  transverseVelocityMPerS: q(quantities.transverseVelocityMPerS),
+  electronShiftEV: q(quantities.electronShiftEV),
+  holeShiftEV: q(quantities.holeShiftEV),
+  electronLengthNm: q(quantities.electronLengthNm),
+  holeLengthNm: q(quantities.holeLengthNm),
+  piezoCoefficientCPerM2: q(quantities.piezoCoefficientCPerM2).default(0),
+  relativePermittivity: q(quantities.relativePermittivity),
+})
+
+const bathKinds = ['powerLaw', 'overdamped', 'underdamped', 'logNormal', 'confinedExciton'] as const
 
 /** Further bath kinds join this union; the engine dispatches on `kind`. */
 export const BathTermSchema = z.discriminatedUnion(
   'kind',
-  [PowerLawTermSchema, OverdampedTermSchema, UnderdampedTermSchema],
+  [PowerLawTermSchema, OverdampedTermSchema, UnderdampedTermSchema, LogNormalTermSchema, ConfinedExcitonTermSchema],
   { error: `expected a bath term of kind ${bathKinds.map((kind) => `"${kind}"`).join(', ')}` },
 )
 
@@ -141,6 +163,8 @@ export const ParameterSetSchema = z
 export type PowerLawTerm = z.infer<typeof PowerLawTermSchema>
 export type OverdampedTerm = z.infer<typeof OverdampedTermSchema>
 export type UnderdampedTerm = z.infer<typeof UnderdampedTermSchema>
+export type LogNormalTerm = z.infer<typeof LogNormalTermSchema>
+export type ConfinedExcitonTerm = z.infer<typeof ConfinedExcitonTermSchema>
 export type BathTerm = z.infer<typeof BathTermSchema>
 export type Mode = z.infer<typeof ModeSchema>
 export type Laser = z.infer<typeof LaserSchema>

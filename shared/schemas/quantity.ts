@@ -1,7 +1,7 @@
 import { z } from 'zod'
 
 /** Units that a stored quantity may carry. Energies are always stored in meV, times in ps, temperatures in K. */
-export type Unit = '1' | 'meV' | 'meV/K' | 'ps' | 'K'
+export type Unit = '1' | 'meV' | 'meV/K' | 'ps' | 'K' | 'eV' | 'nm' | 'm/s' | 'kg/m^3' | 'C/m^2'
 
 /** Everything a form, a printed table and an error text need to know about one physical quantity. */
 export interface Quantity {

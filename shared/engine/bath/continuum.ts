@@ -24,8 +24,13 @@ export interface Continuum {
    * than their start (they double away from 0), so a power of w needs nothing more.
    */
   panelWidth: (start: number) => number
-  /** Time on which g0 first varies, ps; later it varies on the scale of the time itself, apart from `damped` parts. */
+  /** Time on which g0 first varies, ps. */
   firstTime: number
+  /**
+   * Until this time (ps; Infinity where J is not smooth) g0 oscillates with about this frequency; afterwards, and apart
+   * from a `DampedOscillation`, it varies only on the scale of the time itself. Absent where it never oscillates for long.
+   */
+  ringing?: { frequency: number; until: number }
   /** Frequencies at which J or one of its derivatives jumps (table points); ascending. */
   breaks?: Float64Array
 }

@@ -5,6 +5,8 @@
 import type { BathTerm } from '../../schemas/parameter-set'
 import { buildFrequencyPanels } from '../frequency-panels'
 import type { ClosedForm, Continuum, DampedOscillation, DensityIntegrals } from './continuum'
+import { confinedExcitonContinuum } from './confined-exciton'
+import { logNormalContinuum } from './log-normal'
 import { overdampedClosedForm, overdampedContinuum, overdampedIntegrals } from './overdamped'
 import { powerLawClosedForm, powerLawContinuum } from './power-law'
 import {
@@ -39,6 +41,8 @@ const kinds: Kinds = {
     oscillation: underdampedOscillation,
     integrals: underdampedIntegrals,
   },
+  logNormal: { toContinuum: logNormalContinuum },
+  confinedExciton: { toContinuum: confinedExcitonContinuum },
 }
 
 const kindOf = (term: BathTerm): BathKind<BathTerm> => kinds[term.kind] as BathKind<BathTerm>

@@ -59,6 +59,8 @@ def broadening_with_tail(density, scales, temperature, time):
     th = boltzmann * mpf(temperature) / hbar
     t = mpf(time)
     start = 10 * max(scales + ([th] if th > 0 else []) + [1 / t])
+    # On a multiple of half a period; quadosc counts its half periods from its own lower limit 0.
+    start = mpmath.ceil(start * t / mpmath.pi) * mpmath.pi / t
     near = broadening(density, scales, start, temperature, time)
 
     def f(w):
@@ -68,6 +70,6 @@ def broadening_with_tail(density, scales, temperature, time):
         return f(w) * mpmath.coth(w / (2 * th)) if th > 0 else f(w)
 
     whole = mpmath.quad(thermal, [start, 10 * start, 1000 * start, mpmath.inf])
-    cosine = mpmath.quadosc(lambda w: thermal(w) * mpmath.cos(w * t), [start, mpmath.inf], omega=t)
-    sine = mpmath.quadosc(lambda w: f(w) * mpmath.sin(w * t), [start, mpmath.inf], omega=t)
+    cosine = mpmath.quadosc(lambda u: thermal(start + u) * mpmath.cos((start + u) * t), [0, mpmath.inf], omega=t)
+    sine = mpmath.quadosc(lambda u: f(start + u) * mpmath.sin((start + u) * t), [0, mpmath.inf], omega=t)
     return [float(near[0] + whole - cosine), float(near[1] + sine)]

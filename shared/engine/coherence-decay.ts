@@ -37,12 +37,17 @@ export const octaveTimes = (shortest: number, longest: number): Float64Array =>
     (_, k) => shortest * 2 ** (k / STEPS_PER_OCTAVE),
   )
 
-/** D of the linear signal; `withEnsemble` false leaves the Gaussian out. */
-export const linearDecay = (model: LineModel, times: Float64Array, withEnsemble = true): Decay => {
+/** D of the linear signal without its ensemble. */
+export const linearDecay = (model: LineModel, times: Float64Array): Decay => {
   const gam = homogeneousRate(model)
-  const sig = withEnsemble ? ensembleSigma(model) : 0
   const bath = lineBroadeningAt({ bath: model.bath, modes: [] }, model.temperatureK, times).re
-  return { times, exponent: times.map((t, k) => bath[k]! + gam * t + (sig * sig * t * t) / 2) }
+  return { times, exponent: times.map((t, k) => bath[k]! + gam * t) }
+}
+
+/** Adds sig^2 t^2/2. */
+export const withEnsemble = ({ times, exponent }: Decay, model: LineModel): Decay => {
+  const sig = ensembleSigma(model)
+  return { times, exponent: exponent.map((value, k) => value + 0.5 * (sig * times[k]!) ** 2) }
 }
 
 /** D of the rephasing signal on t1 = t3 after the waiting time t2. */

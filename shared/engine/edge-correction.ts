@@ -26,28 +26,32 @@ const seriesOf = (length: number): ComplexSeries => ({ re: new Float64Array(leng
 const FIRST = [-137 / 60, 5, -5, 10 / 3, -5 / 4, 1 / 5]
 const SECOND = [15 / 4, -77 / 6, 107 / 6, -13, 61 / 12, -5 / 6]
 
-/** i c0, -c1, -i c2 at angular frequency w (rad/ps), as [re, im] pairs. */
-export const imageFactors = (w: number, stepPs: number): [number, number][] => {
+/** c0, c1, c2 at angular frequency w (rad/ps), written to out[at ..]. */
+const imageSums = (w: number, stepPs: number, out: Float64Array, at: number): void => {
   const h = stepPs / 2
   const z = w * h
   const q = z * z
-  let first: number
-  let second: number
-  let third: number
   if (Math.abs(z) < 0.3) {
-    first = (-z * h * (1 + q * (1 / 15 + q * (2 / 315 + q / 1575)))) / 3
-    second = h * h * (1 / 3 + q * (1 / 15 + q * (2 / 189 + q / 675)))
-    third = -(h ** 3) * z * (1 / 15 + q * (4 / 189 + q / 225))
-  } else {
-    const s = Math.sin(z)
-    first = h * (Math.cos(z) / s - 1 / z)
-    second = h * h * (1 / (s * s) - 1 / q)
-    third = h ** 3 * (Math.cos(z) / s ** 3 - 1 / (z * q))
+    out[at] = (-z * h * (1 + q * (1 / 15 + q * (2 / 315 + q / 1575)))) / 3
+    out[at + 1] = h * h * (1 / 3 + q * (1 / 15 + q * (2 / 189 + q / 675)))
+    out[at + 2] = -(h ** 3) * z * (1 / 15 + q * (4 / 189 + q / 225))
+    return
   }
+  const s = 1 / Math.sin(z)
+  const c = Math.cos(z) * s
+  out[at] = h * (c - 1 / z)
+  out[at + 1] = h * h * (s * s - 1 / q)
+  out[at + 2] = h ** 3 * (c * s * s - 1 / (z * q))
+}
+
+/** The factors i c0, -c1, -i c2 of value, first and second derivative, as [re, im]. */
+export const imageFactors = (w: number, stepPs: number): [number, number][] => {
+  const sums = new Float64Array(ORDERS)
+  imageSums(w, stepPs, sums, 0)
   return [
-    [0, first],
-    [-second, 0],
-    [0, -third],
+    [0, sums[0]!],
+    [-sums[1]!, 0],
+    [0, -sums[2]!],
   ]
 }
 
@@ -141,6 +145,19 @@ export interface EdgeCorrection {
   addToMap: (values: ComplexSeries, bins: MapBins) => void
 }
 
+/** -i c0, c1, i c2 at all bins. */
+const factorSeries = (bins: ArrayLike<number>, unit: number, stepPs: number): ComplexSeries[] => {
+  const series = Array.from({ length: ORDERS }, () => seriesOf(bins.length))
+  const sums = new Float64Array(ORDERS)
+  for (let i = 0; i < bins.length; i++) {
+    imageSums(bins[i]! * unit, stepPs, sums, 0)
+    series[0]!.im[i] = -sums[0]!
+    series[1]!.re[i] = sums[1]!
+    series[2]!.im[i] = sums[2]!
+  }
+  return series
+}
+
 /** Correction for the maps and slices of these tables; undefined where the signal has no factors. */
 export const edgeCorrection = (tables: SignalTables, padded: number): EdgeCorrection | undefined => {
   const edges = edgesOf(tables)
@@ -160,48 +177,21 @@ export const edgeCorrection = (tables: SignalTables, padded: number): EdgeCorrec
       padded,
       lines.map((_, k) => (k < ORDERS ? places3 : places1)),
     )
-    const on3 = spectra.slice(0, ORDERS)
+    // A3 of the edge is taken off in place: T3 - A3.
+    const open = spectra.slice(0, ORDERS)
     const on1 = spectra.slice(ORDERS)
-    const left = Array.from({ length: 2 * ORDERS }, () => seriesOf(m1.length))
-    const right = Array.from({ length: 2 * ORDERS }, () => seriesOf(m3.length))
-    for (let i = 0; i < m1.length; i++) {
-      const bin = turn * m1[i]!
-      imageFactors(bin * unit, stepPs).forEach(([re, im], order) => {
-        left[order]!.re[i] = -re
-        left[order]!.im[i] = -im
-        left[ORDERS + order]!.re[i] = on1[order]!.re[i]!
-        left[ORDERS + order]!.im[i] = on1[order]!.im[i]!
-      })
-    }
-    for (let i = 0; i < m3.length; i++) {
-      const factors = imageFactors(m3[i]! * unit, stepPs)
-      for (let order = 0; order < ORDERS; order++) {
-        let a = on3[order]!.re[i]!
-        let b = on3[order]!.im[i]!
-        factors.forEach(([fr, fi], inner) => {
-          const [cr, ci] = edges.corner[order]![inner]!
-          a -= fr * cr - fi * ci
-          b -= fr * ci + fi * cr
-        })
-        right[order]!.re[i] = a
-        right[order]!.im[i] = b
-        right[ORDERS + order]!.re[i] = -factors[order]![0]
-        right[ORDERS + order]!.im[i] = -factors[order]![1]
-      }
-    }
-    return { left, right }
+    const negative1 = factorSeries(m1, turn * unit, stepPs)
+    const negative3 = factorSeries(m3, unit, stepPs)
+    open.forEach((edge, order) =>
+      negative3.forEach((factor, inner) => addScaled(edge.re, edge.im, ...edges.corner[order]![inner]!, factor)),
+    )
+    return { left: [...negative1, ...on1], right: [...open, ...negative3] }
   }
 
   return {
     addAt: (values, m1, m3) => {
       const { left, right } = products(m1, m3)
-      left.forEach((a, order) => {
-        const b = right[order]!
-        for (let i = 0; i < m1.length; i++) {
-          values.re[i]! += a.re[i]! * b.re[i]! - a.im[i]! * b.im[i]!
-          values.im[i]! += a.re[i]! * b.im[i]! + a.im[i]! * b.re[i]!
-        }
-      })
+      left.forEach((a, order) => addProducts(values, a, right[order]!))
     },
     addToMap: (values, bins) => {
       const count = 2 * bins.halfBins
@@ -213,6 +203,13 @@ export const edgeCorrection = (tables: SignalTables, padded: number): EdgeCorrec
         left.forEach((a, order) => addScaled(re, im, a.re[i]!, a.im[i]!, right[order]!))
       }
     },
+  }
+}
+
+const addProducts = (values: ComplexSeries, a: ComplexSeries, b: ComplexSeries): void => {
+  for (let i = 0; i < a.re.length; i++) {
+    values.re[i]! += a.re[i]! * b.re[i]! - a.im[i]! * b.im[i]!
+    values.im[i]! += a.re[i]! * b.im[i]! + a.im[i]! * b.re[i]!
   }
 }
 

@@ -23,6 +23,7 @@ import {
   homogeneousRate,
   linearDecay,
   octaveTimes,
+  withEnsemble,
   type Decay,
 } from './coherence-decay'
 import { PLANCK_MEV_PS } from './constants'
@@ -195,34 +196,46 @@ const chosen = (choice: Choice): GridResult => {
   }
 }
 
-const reachOf = (model: LineModel, rules: Rules) => {
-  const reach = sidebandReach(model)
-  const within = (mass: number) => Math.max(reach.above(mass), reach.below(mass))
-  return { reach: within(rules.lostMass), shown: within(rules.shownMass) }
-}
-
-/** Shortest time of interest: a tenth of the inverse span of everything that moves. */
+/** Shortest time of interest: a twentieth of the inverse span of everything that moves; then three an octave. */
 export const decayTimes = (reach: number, model: LineModel): Float64Array => {
   const fastest = reach + model.zeroPhononFwhmMeV + model.ensembleFwhmMeV
   const shortest = fastest > 0 ? PLANCK_MEV_PS / fastest / 20 : 1e-3
   return octaveTimes(shortest, shortest * 2 ** OCTAVES)
 }
 
+interface Scales {
+  /** Largest distance from E0 beyond which the fraction `mass` lies, either side, meV. */
+  reach: (mass: number) => number
+  /** Without the ensemble. */
+  bare: Decay
+  width: number
+}
+
+/** Both grids of a model rest on these; they are kept as long as the model is. */
+const known = new WeakMap<LineModel, Scales>()
+
+const scalesOf = (model: LineModel): Scales => {
+  const kept = known.get(model)
+  if (kept) return kept
+  const { above, below } = sidebandReach(model)
+  const reach = (mass: number) => Math.max(above(mass), below(mass))
+  const bare = linearDecay(model, decayTimes(reach(LINEAR.lostMass), model))
+  const scales = { reach, bare, width: lateWidthMeV(bare, model) }
+  known.set(model, scales)
+  return scales
+}
+
 /** Grid of absorption and emission. */
 export const chooseLinearGrid = (model: LineModel, override: GridOverride = {}): GridResult => {
-  const { reach, shown } = reachOf(model, LINEAR)
-  const times = decayTimes(reach, model)
-  const bare = linearDecay(model, times, false)
-  const width = lateWidthMeV(bare, model)
-  const decay = model.ensembleFwhmMeV > 0 ? linearDecay(model, times) : bare
-  const window = decayWindow(decay, LINEAR.cutFraction, homogeneousRate(model))
+  const { reach, bare, width } = scalesOf(model)
+  const window = decayWindow(withEnsemble(bare, model), LINEAR.cutFraction, homogeneousRate(model))
   if (window === Infinity) return withoutDecay(LINEAR, model, ['zeroPhononFwhmMeV', 'ensembleFwhmMeV'])
   return chosen({
     rules: LINEAR,
     model,
     window,
-    reach,
-    shown: shown + 6 * width,
+    reach: reach(LINEAR.lostMass),
+    shown: reach(LINEAR.shownMass) + 6 * width,
     width,
     override: {
       stepPs: override.linearTimeStepPs,
@@ -239,24 +252,21 @@ export const chooseLinearGrid = (model: LineModel, override: GridOverride = {}):
  * shortest waiting time has the longest echo.
  */
 export const chooseMapGrid = (model: LineModel, shortestWaitPs: number, override: GridOverride = {}): GridResult => {
-  const { reach, shown } = reachOf(model, MAP)
-  const times = decayTimes(reach, model)
+  const { reach, bare, width } = scalesOf(model)
   const gam = homogeneousRate(model)
-  const bare = linearDecay(model, times, false)
-  const width = lateWidthMeV(bare, model)
-  if (decayWindow(bare, MAP.cutFraction, gam) === Infinity) return withoutDecay(MAP, model, ['zeroPhononFwhmMeV'])
-  const axis = model.ensembleFwhmMeV > 0 ? linearDecay(model, times) : bare
+  const refused = withoutDecay(MAP, model, ['zeroPhononFwhmMeV'])
+  if (decayWindow(bare, MAP.cutFraction, gam) === Infinity) return refused
   const window = Math.max(
-    decayWindow(axis, MAP.cutFraction, gam),
-    decayWindow(echoDecay(model, times, shortestWaitPs), MAP.cutFraction, 2 * gam),
+    decayWindow(withEnsemble(bare, model), MAP.cutFraction, gam),
+    decayWindow(echoDecay(model, bare.times, shortestWaitPs), MAP.cutFraction, 2 * gam),
   )
-  if (window === Infinity) return withoutDecay(MAP, model, ['zeroPhononFwhmMeV'])
+  if (window === Infinity) return refused
   return chosen({
     rules: MAP,
     model,
     window,
-    reach,
-    shown: shown + 6 * width,
+    reach: reach(MAP.lostMass),
+    shown: reach(MAP.shownMass) + 6 * width,
     width,
     override: {
       stepPs: override.mapTimeStepPs,

@@ -13,7 +13,7 @@
  * radians; the first one is halved towards t = 0. The window leaves 1e-12 of the signal. Cost: nodes x energies; the model
  * must allow a linear spectrum (chooseLinearGrid), else RangeError. Spec: tests/engine/linear-reference.spec.ts.
  */
-import { decayWindow, ensembleSigma, homogeneousRate, linearDecay } from './coherence-decay'
+import { decayWindow, ensembleSigma, homogeneousRate, linearDecay, withEnsemble } from './coherence-decay'
 import { HBAR_MEV_PS } from './constants'
 import { gaussLegendre } from './gauss-legendre'
 import { lineBroadeningAt } from './line-broadening'
@@ -34,7 +34,11 @@ const LARGEST_COUNT = 4_000_000
 export const absorptionFunction = (model: LineModel, farthestMeV: number): ((energyMeV: number) => number) => {
   const bounds = sidebandReach(model)
   const reach = Math.max(bounds.above(LOST), bounds.below(LOST))
-  const window = decayWindow(linearDecay(model, decayTimes(reach, model)), CUT, homogeneousRate(model))
+  const window = decayWindow(
+    withEnsemble(linearDecay(model, decayTimes(reach, model)), model),
+    CUT,
+    homogeneousRate(model),
+  )
   const panel = (LARGEST_PHASE * HBAR_MEV_PS) / (farthestMeV + reach + model.zeroPhononFwhmMeV)
   const count = Math.ceil(window / panel) + HALVINGS
   if (!(count * NODES <= LARGEST_COUNT)) {

@@ -53,33 +53,32 @@ export const linearSignal = (model: LineModel, broadening: ComplexSeries, stepPs
  * One forward transform of length N/2.
  */
 export const realSpectrum = (signal: ComplexSeries, length: number): Float64Array => {
-  const { re, im } = signal
-  const samples = re.length
   const half = length / 2
+  // h_j = (a_j + conj a_{N-j})/2 is Hermitian, so its transform is real: X_m = Re of the wanted sum.
+  const hr = new Float64Array(length)
+  const hi = new Float64Array(length)
+  for (let j = 0; j < signal.re.length; j++) {
+    const a = 0.5 * signal.re[j]!
+    const b = 0.5 * signal.im[j]!
+    hr[j]! += a
+    hi[j]! += b
+    if (j === 0) continue
+    hr[length - j]! += a
+    hi[length - j]! -= b
+  }
+  hi[0] = 0
   const zr = new Float64Array(half)
   const zi = new Float64Array(half)
-  // h_j = (a_j + conj a_{N-j})/2 is Hermitian, so its transform is real: X_m = Re of the wanted sum.
-  // With conj(h) a forward transform serves: even and odd samples of X come from h_j +- h_{j+N/2}.
-  const at = (j: number, part: Float64Array): number => (j < samples ? part[j]! : 0)
+  const twist = quarterWave(length)
+  // Even and odd samples of X come from h_j +- h_{j+N/2}, the odd ones with the twist exp(+2 pi i j/N); both are real after
+  // the transform, so they travel as z = even + i odd.
   for (let j = 0; j < half; j++) {
-    const k = half - j
-    const ar = 0.5 * (at(j, re) + (j === 0 ? 0 : at(length - j, re)))
-    const ai = j === 0 ? 0 : 0.5 * (at(j, im) - at(length - j, im))
-    // h_{j + N/2} = conj h_{N/2 - j}
-    const br = 0.5 * (at(k, re) + at(length - k, re))
-    const bi = -0.5 * (at(k, im) - at(length - k, im))
-    const sumR = ar + br
-    const sumI = ai + bi
-    const difR = ar - br
-    const difI = ai - bi
-    const angle = (2 * Math.PI * j) / length
-    const c = Math.cos(angle)
-    const s = Math.sin(angle)
-    // odd samples carry the twist exp(+2 pi i j/N); z = even + i odd, both real after the transform.
-    const twistR = difR * c - difI * s
-    const twistI = difR * s + difI * c
-    zr[j] = sumR - twistI
-    zi[j] = sumI + twistR
+    const difR = hr[j]! - hr[j + half]!
+    const difI = hi[j]! - hi[j + half]!
+    const c = twist[2 * j]!
+    const s = twist[2 * j + 1]!
+    zr[j] = hr[j]! + hr[j + half]! - (difR * s + difI * c)
+    zi[j] = hi[j]! + hi[j + half]! + (difR * c - difI * s)
   }
   // exp(+...): transform with the parts exchanged.
   forwardFft(zi, zr, fftPlan(half))
@@ -89,6 +88,22 @@ export const realSpectrum = (signal: ComplexSeries, length: number): Float64Arra
     spectrum[2 * m + 1] = zi[m]!
   }
   return spectrum
+}
+
+const waves = new Map<number, Float64Array>()
+
+/** cos and sin of 2 pi j/N, j < N/2, in pairs; kept per length. */
+const quarterWave = (length: number): Float64Array => {
+  let wave = waves.get(length)
+  if (!wave) {
+    wave = new Float64Array(length)
+    for (let j = 0; j < length / 2; j++) {
+      wave[2 * j] = Math.cos((2 * Math.PI * j) / length)
+      wave[2 * j + 1] = Math.sin((2 * Math.PI * j) / length)
+    }
+    waves.set(length, wave)
+  }
+  return wave
 }
 
 /** Absorption and emission on the kept bins of `grid`; `broadening` holds g0 on its samples. */

@@ -11,7 +11,7 @@
  * and whose window leaves 1e-9 of the signal, with the end correction (fourth order in dt), and halves the step until two
  * answers agree. Cost: samples^2 per point. Spec: tests/engine/map-reference.spec.ts.
  */
-import { decayWindow, echoDecay, ensembleSigma, homogeneousRate, linearDecay } from './coherence-decay'
+import { decayWindow, echoDecay, ensembleSigma, homogeneousRate, linearDecay, withEnsemble } from './coherence-decay'
 import { HBAR_MEV_PS, PLANCK_MEV_PS } from './constants'
 import { edgesOf, imageFactors, type Edges } from './edge-correction'
 import { decayTimes } from './grid'
@@ -187,7 +187,7 @@ export const mapAt = (
   const reach = Math.max(bounds.above(LOST), bounds.below(LOST))
   const times = decayTimes(reach, model)
   const window = Math.max(
-    decayWindow(linearDecay(model, times), CUT, gam),
+    decayWindow(withEnsemble(linearDecay(model, times), model), CUT, gam),
     decayWindow(echoDecay(model, times, waitingTimePs), CUT, 2 * gam),
   )
   if (!Number.isFinite(window))

@@ -58,7 +58,7 @@ export const previewSlice = (
 ): { slice: PreviewSlice; broadeningError: number } => {
   const broadening = broadeningForWait(model, grid, waitingTimePs, broadeningAtTimes(model, grid, waitingTimePs === 0))
   const tables = mapTables(model, waitingTimePs, grid.timeStepPs, broadening)
-  const bins = sliceBins(grid)
+  const bins = sliceBins(grid).across
   const { slice, method } = rephasingCrossDiagonal(tables.rephasing, bins)
   const offsets = binEnergies(bins, grid.spanMeV)
   const centre = model.zeroPhononEnergyMeV

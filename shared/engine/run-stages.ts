@@ -47,16 +47,17 @@ export const runMaps = (
   const bins = mapBins(grid)
   const fine = sliceBins(grid)
   const energies = shifted(binEnergies(bins, grid.spanMeV), centre)
-  const offsets = binEnergies(fine, grid.spanMeV)
-  const along = shifted(offsets, centre)
-  const shifts = offsets.map((offset) => 2 * offset)
+  const along = shifted(binEnergies(fine.along, grid.spanMeV), centre)
+  const halfShifts = binEnergies(fine.across, grid.spanMeV)
+  const shifts = halfShifts.map((offset) => 2 * offset)
   const lasers = {
     map: laserIntensity(model.laser, energies),
     along: laserIntensity(model.laser, along),
-    before: laserIntensity(
+    below: laserIntensity(
       model.laser,
-      offsets.map((offset) => centre - offset),
+      halfShifts.map((offset) => centre - offset),
     ),
+    above: laserIntensity(model.laser, shifted(halfShifts, centre)),
   }
   const side = energies.length
   collector.add(`map/${t}/energies1`, 'meV', energies)
@@ -84,7 +85,7 @@ export const runMaps = (
 
     const { crossDiagonal, diagonal, method } = mapSlices(tables, fine)
     const parts = ({ re, im }: ComplexSeries) => [re, im]
-    weightAlong([...parts(crossDiagonal.rephasing), ...parts(crossDiagonal.nonRephasing)], lasers.before, lasers.along)
+    weightAlong([...parts(crossDiagonal.rephasing), ...parts(crossDiagonal.nonRephasing)], lasers.below, lasers.above)
     weightAlong([...parts(diagonal.rephasing), ...parts(diagonal.nonRephasing)], lasers.along, lasers.along)
     const across = absorptiveOf(crossDiagonal.rephasing, crossDiagonal.nonRephasing)
     const onDiagonal = absorptiveOf(diagonal.rephasing, diagonal.nonRephasing)

@@ -44,9 +44,9 @@ const FLOAT64 = 8
 const mapPoints = (grid: SpectralGrid): number => (2 * grid.halfBins) ** 2
 
 const bytesOf = ({ linear, map }: Plan, waits: number): number => {
-  const slicePoints = 2 * sliceBins(map).halfBins
+  const { across, along } = sliceBins(map)
   const lines = 3 * 2 * linear.halfBins * FLOAT64
-  const maps = mapPoints(map) * (8 + 8 + 4) + 2 * slicePoints * 6 * FLOAT64
+  const maps = mapPoints(map) * (8 + 8 + 4) + 12 * (across.halfBins + along.halfBins) * FLOAT64
   return lines + 4 * map.halfBins * FLOAT64 + waits * maps
 }
 

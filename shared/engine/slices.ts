@@ -3,7 +3,7 @@
  *
  * | symbol | variable | unit | shape |
  * | --- | --- | --- | --- |
- * | x = E3 - E1 across, E along | axis | meV | [2 halfBins] |
+ * | x = E3 - E1 across (two bins a step), E along | axis | meV | [2 halfBins] |
  * | S_R, S_N | rephasing, nonRephasing | ps^2 | [2 halfBins] complex |
  * | Re(S_R + S_N) | absorptive | ps^2 | [2 halfBins] |
  *
@@ -16,7 +16,7 @@
  * maximum; the band otherwise. The answer says which, and the estimate.
  * Source: Siemens et al., Opt. Express 18, 17699 (2010), equations for the diagonal and cross-diagonal line shapes.
  */
-import { edgeCorrection } from './edge-correction'
+import { edgeCorrection, type EdgeCorrection } from './edge-correction'
 import { transformBatch } from './kernel/batch-transform'
 import type { Factors, MapTables, SignalTables } from './map-tables'
 import { wrappedBin, type MapBins } from './map'
@@ -55,8 +55,10 @@ export interface Slices {
 }
 
 interface Reduction {
-  slice: ComplexSeries
+  /** Its error as a fraction of the largest value that the slice can have, the sum of |R|. */
   error: number
+  /** The slice itself, made when asked for. */
+  slice: () => ComplexSeries
 }
 
 /** P(t1) Q(t3) H(t1 + t3) without the ensemble. */
@@ -65,9 +67,6 @@ const product = ({ p, q, h }: Factors, i: number, k: number): [number, number] =
   const ai = p.re[i]! * q.im[k]! + p.im[i]! * q.re[k]!
   return [ar * h.re[i + k]! - ai * h.im[i + k]!, ar * h.im[i + k]! + ai * h.re[i + k]!]
 }
-
-const largestModulus = ({ re, im }: ComplexSeries): number =>
-  re.reduce((most, value, j) => Math.max(most, Math.hypot(value, im[j]!)), 0)
 
 /**
  * The one-dimensional reduction with its error: half the second difference of R across t1 = t3 at the distance 1/sig,
@@ -78,15 +77,17 @@ export const reducedCrossDiagonal = (tables: SignalTables, bins: MapBins): Reduc
   if (!factors || !(ensemble > 0)) return undefined
   const sigStep = Math.sqrt(2 * ensemble)
   const scale = Math.sqrt(2 * Math.PI) / sigStep
-  const apart = Math.max(1, Math.round(1 / sigStep))
+  const apart = Math.min(n - 1, Math.max(1, Math.round(1 / sigStep)))
   const signal = empty(2 * n - 1)
   let curvature = 0
+  let size = 0
   for (let j = 0; j < n; j++) {
     const [re, im] = product(factors, j, j)
     // P and Q both carry the half weight of their first sample: the single integral wants one of them.
     const weight = j === 0 ? 2 * scale : scale
     signal.re[2 * j] = weight * re
     signal.im[2 * j] = weight * im
+    size += weight * Math.hypot(re, im)
     if (j > apart && j + apart < n) {
       const before = product(factors, j - apart, j + apart)
       const after = product(factors, j + apart, j - apart)
@@ -103,66 +104,73 @@ export const reducedCrossDiagonal = (tables: SignalTables, bins: MapBins): Reduc
     tilt * Math.hypot(...corner) +
     // The trapezoid of a Gaussian of few samples, exact to exp(-2 pi^2/(sig dt)^2).
     scale * Math.hypot(first[0], first[1]) * Math.exp((-2 * Math.PI ** 2) / (sigStep * sigStep))
-  const slice = keptTransform(signal, 0, bins)
-  for (let i = 0; i < slice.re.length; i++) {
-    slice.re[i]! -= corner[0]
-    slice.im[i]! -= corner[1]
+  const slice = (): ComplexSeries => {
+    const out = keptTransform(signal, 0, bins)
+    for (let i = 0; i < out.re.length; i++) {
+      out.re[i]! -= corner[0]
+      out.im[i]! -= corner[1]
+    }
+    return out
   }
-  const largest = largestModulus(slice)
-  return { slice, error: largest > 0 ? (curvature + cornerChange) / largest : Infinity }
-}
-
-/** The rephasing cross-diagonal alone: what the preview draws. */
-export const rephasingCrossDiagonal = (
-  tables: SignalTables,
-  bins: MapBins,
-): { slice: ComplexSeries; method: SliceMethod } => {
-  const reduction = reducedCrossDiagonal(tables, bins)
-  const band = Math.min(tables.samples, bandSamples(tables))
-  const reductionError = reduction?.error ?? null
-  if (reduction && reduction.error <= REDUCTION_TOLERANCE) {
-    return { slice: reduction.slice, method: { method: 'reduction', reductionError, band } }
-  }
-  const slice = keptTransform(projections(tables, false).onSum, 0, bins)
-  const offsets = offsetsOf(bins)
-  edgeCorrection(tables, bins.padded)?.addAt(
-    slice,
-    offsets.map((bin) => -bin),
-    offsets,
-  )
-  return { slice, method: { method: 'band', reductionError, band } }
+  return { slice, error: size > 0 ? (curvature + cornerChange) / size : Infinity }
 }
 
 /** Bins counted from E0. */
 const offsetsOf = ({ halfBins, stride }: MapBins): Int32Array =>
   Int32Array.from({ length: 2 * halfBins }, (_, i) => (i - halfBins) * stride)
 
-/** Diagonal and cross-diagonal of one signal from its projections, end-corrected like the map. */
-const slicesOf = (tables: SignalTables, bins: MapBins): { across: ComplexSeries; along: ComplexSeries } => {
-  const { onSum, onDifference } = projections(tables)
-  const sums = keptTransform(onSum, 0, bins)
-  const differences = keptTransform(onDifference, 1 - tables.samples, bins)
-  const across = tables.rephasing ? sums : differences
-  const along = tables.rephasing ? differences : sums
-  const correction = edgeCorrection(tables, bins.padded)
+/** A slice from its projection, end-corrected like the map. */
+const corrected = (
+  projection: ComplexSeries,
+  first: number,
+  bins: MapBins,
+  correction: EdgeCorrection | undefined,
+  across: boolean,
+): ComplexSeries => {
+  const slice = keptTransform(projection, first, bins)
   const offsets = offsetsOf(bins)
-  correction?.addAt(
-    across,
-    offsets.map((bin) => -bin),
-    offsets,
-  )
-  correction?.addAt(along, offsets, offsets)
-  return { across, along }
+  correction?.addAt(slice, across ? offsets.map((bin) => -bin) : offsets, offsets)
+  return slice
+}
+
+/** The rephasing cross-diagonal alone: what the preview draws. `onSum` is made when it is not at hand. */
+export const rephasingCrossDiagonal = (
+  tables: SignalTables,
+  bins: MapBins,
+  onSum?: ComplexSeries,
+  correction?: EdgeCorrection,
+): { slice: ComplexSeries; method: SliceMethod } => {
+  const reduction = reducedCrossDiagonal(tables, bins)
+  const band = Math.min(tables.samples, bandSamples(tables))
+  const reductionError = reduction?.error ?? null
+  if (reduction && reduction.error <= REDUCTION_TOLERANCE) {
+    return { slice: reduction.slice(), method: { method: 'reduction', reductionError, band } }
+  }
+  const projection = onSum ?? projections(tables, false).onSum
+  const edges = correction ?? edgeCorrection(tables, bins.padded)
+  return { slice: corrected(projection, 0, bins, edges, true), method: { method: 'band', reductionError, band } }
+}
+
+/** Bins of the two directions, of one padded length. */
+export interface SliceBins {
+  across: MapBins
+  along: MapBins
 }
 
 /** All slices of one waiting time. */
-export const mapSlices = (tables: MapTables, bins: MapBins): Slices => {
-  const { slice, method } = rephasingCrossDiagonal(tables.rephasing, bins)
-  const rephasing = slicesOf(tables.rephasing, bins)
-  const nonRephasing = slicesOf(tables.nonRephasing, bins)
+export const mapSlices = ({ rephasing, nonRephasing }: MapTables, { across, along }: SliceBins): Slices => {
+  const first = 1 - rephasing.samples
+  const r = projections(rephasing)
+  const s = projections(nonRephasing)
+  const rEdges = edgeCorrection(rephasing, across.padded)
+  const sEdges = edgeCorrection(nonRephasing, across.padded)
+  const { slice, method } = rephasingCrossDiagonal(rephasing, across, r.onSum, rEdges)
   return {
-    crossDiagonal: { rephasing: slice, nonRephasing: nonRephasing.across },
-    diagonal: { rephasing: rephasing.along, nonRephasing: nonRephasing.along },
+    crossDiagonal: { rephasing: slice, nonRephasing: corrected(s.onDifference, first, across, sEdges, true) },
+    diagonal: {
+      rephasing: corrected(r.onDifference, first, along, rEdges, false),
+      nonRephasing: corrected(s.onSum, 0, along, sEdges, false),
+    },
     method,
   }
 }

@@ -12,6 +12,7 @@ import { lineBroadening, lineBroadeningAt } from './line-broadening'
 import { linearSpectra, type LinearSpectra } from './linear'
 import type { MapBins } from './map'
 import type { MapBroadening } from './map-tables'
+import type { SliceBins } from './slices'
 import { spectralDensity } from './spectral-density'
 import type { LineBroadening, LineModel } from './types'
 
@@ -90,18 +91,19 @@ export const mapBins = ({ paddedSamples, halfBins, stride }: SpectralGrid): MapB
 })
 
 /** Points of a slice at most; fewer where the padded window already resolves the lines. */
-const SLICE_POINTS = 8192
+const SLICE_POINTS = 4096
 const SLICE_PADDING = 16
 
 /**
  * Finer bins for slices, which cost one dimension only: sixteen times the window, so that x = E3 - E1, which runs in
- * steps of two bins, still puts a dozen points on the narrowest line; every point kept.
+ * steps of two bins, still puts a dozen points on the narrowest line. Both run over the range of the map; every point kept.
  */
-export const sliceBins = (grid: SpectralGrid): MapBins => {
+export const sliceBins = (grid: SpectralGrid): SliceBins => {
   let padded = Math.max(grid.paddedSamples, nextPowerOfTwo(SLICE_PADDING * grid.samples))
-  const pointsOf = (length: number) => 2 * ((grid.halfBins * grid.stride * length) / grid.paddedSamples)
-  while (pointsOf(padded) > SLICE_POINTS && padded > grid.paddedSamples) padded /= 2
-  return { padded, halfBins: Math.min(padded, pointsOf(padded)) / 2, stride: 1 }
+  const halfOf = (length: number) => (grid.halfBins * grid.stride * length) / grid.paddedSamples
+  while (2 * halfOf(padded) > SLICE_POINTS && padded > grid.paddedSamples) padded /= 2
+  const halfBins = Math.min(padded / 2, halfOf(padded))
+  return { across: { padded, halfBins: halfBins / 2, stride: 1 }, along: { padded, halfBins, stride: 1 } }
 }
 
 /** E - E0 of the kept bins. */

@@ -1,6 +1,6 @@
 import fc from 'fast-check'
 import { describe, expect, it } from 'vitest'
-import { decayWindow, linearDecay, octaveTimes } from '../../shared/engine/coherence-decay'
+import { decayWindow, linearDecay, octaveTimes, withEnsemble } from '../../shared/engine/coherence-decay'
 import { GAUSSIAN_FWHM_PER_SIGMA, PLANCK_MEV_PS } from '../../shared/engine/constants'
 import { chooseLinearGrid, chooseMapGrid, type GridResult, type SpectralGrid } from '../../shared/engine/grid'
 import { sidebandReach } from '../../shared/engine/sideband-reach'
@@ -28,7 +28,7 @@ describe('windows', () => {
 
   it('are about 8 ps per meV for a Gaussian one', () => {
     const model = lineModel({ zeroPhononFwhmMeV: 0, ensembleFwhmMeV: 2 })
-    const window = decayWindow(linearDecay(model, times), 1e-6, 0)
+    const window = decayWindow(withEnsemble(linearDecay(model, times), model), 1e-6, 0)
     // exp(-D) = 1e-6 at 8.15 ps/FWHM; its integral falls a little faster.
     expect(window).toBeGreaterThan(7 / 2)
     expect(window).toBeLessThan(8.3 / 2)

@@ -49,7 +49,7 @@ describe('absorption at given energies', () => {
   })
 
   it('has the Voigt widths of the reference', () => {
-    const [[, { values }]] = referenceCases('voigtFwhm') as [[string, { values: unknown }]]
+    const [[, { values }]] = referenceCases('voigtFwhm') as unknown as [[string, { values: unknown }]]
     const { rows } = values as { rows: { lorentzianFwhmMeV: number; gaussianFwhmMeV: number; fwhmMeV: number }[] }
     for (const { lorentzianFwhmMeV, gaussianFwhmMeV, fwhmMeV } of rows) {
       const model = lineModel({ zeroPhononFwhmMeV: lorentzianFwhmMeV, ensembleFwhmMeV: gaussianFwhmMeV })
@@ -58,7 +58,7 @@ describe('absorption at given energies', () => {
   })
 
   it('has the Lorentzian width 2 hbar/T2 of the reference', () => {
-    const [[, { parameters, values }]] = referenceCases('lorentzianFwhm') as [
+    const [[, { parameters, values }]] = referenceCases('lorentzianFwhm') as unknown as [
       [string, { parameters: unknown; values: unknown }],
     ]
     const { coherenceTimesPs } = parameters as { coherenceTimesPs: number[] }

@@ -33,6 +33,27 @@ export interface KernelExports {
   keepBins: (buffer: number, middle: number, blockBytes: number, first: number, places: number, groups: number) => void
   gather: (buffer: number, order: number, block: number, count: number) => void
   gatherHermitian: (buffer: number, order: number, a: number, b: number, length: number) => void
+  addProduct: (
+    pr: number,
+    pi: number,
+    qr: number,
+    qi: number,
+    factor: number,
+    outR: number,
+    outI: number,
+    count: number,
+  ) => void
+  addTriple: (
+    pr: number,
+    pi: number,
+    qr: number,
+    qi: number,
+    hr: number,
+    hi: number,
+    outR: number,
+    outI: number,
+    count: number,
+  ) => void
   scatter: (
     buffer: number,
     places: number,
@@ -50,6 +71,8 @@ interface Host {
   Module: new (bytes: Uint8Array) => object
   Instance: new (module: object, imports: object) => { exports: unknown }
 }
+
+declare const WebAssembly: Host | undefined
 
 const alphabet = 'ABCDEFGHIJKLMNOPQRSTUVWXYZabcdefghijklmnopqrstuvwxyz0123456789+/'
 
@@ -74,7 +97,7 @@ let kernel: KernelExports | null | undefined
 /** The kernel of this thread; null where the host cannot run it. */
 export const loadKernel = (): KernelExports | null => {
   if (kernel !== undefined) return kernel
-  const host = (globalThis as { WebAssembly?: Host }).WebAssembly
+  const host = typeof WebAssembly === 'undefined' ? undefined : WebAssembly
   const bytes = decoded(mapKernelBase64)
   if (!host?.validate(bytes)) {
     kernel = null

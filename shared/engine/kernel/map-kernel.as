@@ -358,3 +358,61 @@ export function scatter(
     v128.store(im + to + VECTOR, v128.load(row + HALF + VECTOR))
   }
 }
+
+/** out[j] += factor[j] (p q[j]), j < count; factor 0 stands for 1. Any alignment. */
+export function addProduct(
+  pr: f64, pi: f64, qr: usize, qi: usize, factor: usize, outR: usize, outI: usize, count: usize,
+): void {
+  const ar = f64x2.splat(pr)
+  const ai = f64x2.splat(pi)
+  const pairs = (count & ~1) << 3
+  for (let j: usize = 0; j < pairs; j += VECTOR) {
+    const br = v128.load(qr + j)
+    const bi = v128.load(qi + j)
+    let vr = sub(mul(ar, br), mul(ai, bi))
+    let vi = add(mul(ar, bi), mul(ai, br))
+    if (factor) {
+      const f = v128.load(factor + j)
+      vr = mul(vr, f)
+      vi = mul(vi, f)
+    }
+    v128.store(outR + j, add(v128.load(outR + j), vr))
+    v128.store(outI + j, add(v128.load(outI + j), vi))
+  }
+  if (count & 1) {
+    const br = load<f64>(qr + pairs)
+    const bi = load<f64>(qi + pairs)
+    const f = factor ? load<f64>(factor + pairs) : 1
+    store<f64>(outR + pairs, load<f64>(outR + pairs) + f * (pr * br - pi * bi))
+    store<f64>(outI + pairs, load<f64>(outI + pairs) + f * (pr * bi + pi * br))
+  }
+}
+
+/** out[j] += p q[j] h[j], j < count. Any alignment. */
+export function addTriple(
+  pr: f64, pi: f64, qr: usize, qi: usize, hr: usize, hi: usize, outR: usize, outI: usize, count: usize,
+): void {
+  const ar = f64x2.splat(pr)
+  const ai = f64x2.splat(pi)
+  const pairs = (count & ~1) << 3
+  for (let j: usize = 0; j < pairs; j += VECTOR) {
+    const br = v128.load(qr + j)
+    const bi = v128.load(qi + j)
+    const vr = sub(mul(ar, br), mul(ai, bi))
+    const vi = add(mul(ar, bi), mul(ai, br))
+    const cr = v128.load(hr + j)
+    const ci = v128.load(hi + j)
+    v128.store(outR + j, add(v128.load(outR + j), sub(mul(vr, cr), mul(vi, ci))))
+    v128.store(outI + j, add(v128.load(outI + j), add(mul(vr, ci), mul(vi, cr))))
+  }
+  if (count & 1) {
+    const br = load<f64>(qr + pairs)
+    const bi = load<f64>(qi + pairs)
+    const vr = pr * br - pi * bi
+    const vi = pr * bi + pi * br
+    const cr = load<f64>(hr + pairs)
+    const ci = load<f64>(hi + pairs)
+    store<f64>(outR + pairs, load<f64>(outR + pairs) + (vr * cr - vi * ci))
+    store<f64>(outI + pairs, load<f64>(outI + pairs) + (vr * ci + vi * cr))
+  }
+}

@@ -4,7 +4,7 @@ import { ThreadPool } from './pool'
 /** One thread beside those of the runs: reading a table must not wait for a run of an hour, and takes seconds itself. */
 const threads = 1
 const heapMb = 512
-const limitMs = 20_000
+const limitMs = 30_000
 const graceMs = 1000
 /** Requests that may wait for the thread; each of them holds a connection. */
 const maxWaiting = 64

@@ -10,10 +10,10 @@ import { readTableInThread, TablePoolFullError } from '../jobs/table-pool'
 import { getFileStore } from '../storage/current'
 
 /** A table of this size is read within a few milliseconds; anything larger would keep other requests waiting. */
-const inlineBytes = 64 * 1024
+const inlineBytes = 16 * 1024
 
 const endedSentence = {
-  'time-limit': 'The file could not be read within 20 seconds; expected a table of numbers.',
+  'time-limit': 'The file could not be read within 30 seconds; expected a table of numbers.',
   lost: 'The file needs more memory to be read than a table of numbers does.',
   stopped: 'The reading of the file was stopped.',
 } as const

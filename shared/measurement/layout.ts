@@ -1,7 +1,7 @@
 import type { ReadingQuestion } from '../schemas/measurement'
 import { limits } from '../utils/limits'
-import { isBlank, isComment, splitFields, type Delimiter } from './fields'
-import { isMissing, shapeOf } from './number-text'
+import { delimiterCharacters, isBlank, isComment, splitFields, type Delimiter } from './fields'
+import { isMissing, looksLikeNumber } from './number-text'
 import type { Line } from './text-lines'
 import { quote, unreadable } from './unreadable'
 
@@ -27,7 +27,7 @@ export interface Row {
 
 /** Blanks may group the thousands within a cell, but in a file of bare commas they only pad: "1,5 234,5" is no cell. */
 const isNumberLike = (field: string, delimiter: Delimiter): boolean =>
-  shapeOf(field) !== undefined && !(delimiter === 'comma' && /[0-9][ \t]+[0-9]/.test(field))
+  looksLikeNumber(field) && !(delimiter === 'comma' && /[0-9][ \t]+[0-9]/.test(field))
 
 const isCellLike = (field: string, delimiter: Delimiter): boolean => isNumberLike(field, delimiter) || isMissing(field)
 
@@ -148,8 +148,11 @@ const layoutOf = (run: Row[], delimiter: Delimiter): Layout | undefined => {
   return { delimiter, firstLine, lastLine, columns, rows, numeric }
 }
 
+const occurs = (lines: readonly Line[], delimiter: Delimiter): boolean =>
+  delimiter === 'blanks' || lines.some((line) => line.text.includes(delimiterCharacters[delimiter]))
+
 const onlyOneColumn = (lines: readonly Line[]): Line | undefined => {
-  const numbers = lines.filter((line) => shapeOf(line.text) !== undefined)
+  const numbers = lines.filter((line) => looksLikeNumber(line.text))
   return numbers.length >= 2 ? numbers[0] : undefined
 }
 
@@ -164,6 +167,7 @@ export const findLayout = (lines: readonly Line[]): Layout => {
   const order: Delimiter[] = ['tab', 'semicolon', 'comma', 'blanks']
   let best: Layout | undefined
   for (const delimiter of order) {
+    if (!occurs(lines, delimiter)) continue
     const layout = layoutOf(longestRun(lines, delimiter), delimiter)
     if (layout !== undefined && (best === undefined || weightOf(layout) > weightOf(best))) best = layout
   }

@@ -45,6 +45,12 @@ export interface NumberShape {
   exponent: string | undefined
 }
 
+/** The plain notations, which nearly every cell of every file has; anything else is looked at closely. */
+const plain = /^[+-]?[0-9]+(?:[.,][0-9]+)?(?:[eE][+-]?[0-9]{1,3})?$/
+
+/** Whether a cell looks like a number in any notation. */
+export const looksLikeNumber = (text: string): boolean => plain.test(text) || shapeOf(text) !== undefined
+
 /** Splits a cell into sign, body and exponent; undefined where it does not look like a number in any notation. */
 export const shapeOf = (text: string): NumberShape | undefined => {
   const match = shape.exec(normaliseSigns(text.trim()))

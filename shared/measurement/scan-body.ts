@@ -2,7 +2,7 @@ import type { ByteSource } from './byte-source'
 import { isBlank, isComment, splitFields } from './fields'
 import { isForeignNumber, type Layout } from './layout'
 import { addEvidence, type MarkEvidence } from './marks'
-import { isMissing, oddity, shapeOf } from './number-text'
+import { isMissing, looksLikeNumber, oddity } from './number-text'
 import { readLines, type Encoding, type Line } from './text-lines'
 import { quote, unreadable } from './unreadable'
 
@@ -15,20 +15,20 @@ export interface BodyScan {
   footerLines: number
 }
 
-const isCell = (field: string) => shapeOf(field) !== undefined || isMissing(field)
+const isCell = (field: string) => looksLikeNumber(field) || isMissing(field)
 
 const isRow = (fields: string[], layout: Layout): boolean => {
   const filled = fields.findLastIndex((field) => field !== '') + 1
   if (filled > layout.columns || fields.length <= (layout.numeric[1] ?? 0)) return false
   const cells = layout.numeric.map((index) => fields[index] ?? '')
   const like = cells.filter(isCell).length
-  return isCell(cells[0] ?? '') && 2 * like >= cells.length && cells.some((cell) => shapeOf(cell) !== undefined)
+  return isCell(cells[0] ?? '') && 2 * like >= cells.length && cells.some(looksLikeNumber)
 }
 
 /** Text below a table: it does not begin with a number, in whatever script. */
 const isRemark = (fields: string[]): boolean => {
   const first = fields.find((field) => field !== '') ?? ''
-  return /[\p{L}\p{P}]/u.test(first) && shapeOf(first) === undefined && !isForeignNumber(first)
+  return /[\p{L}\p{P}]/u.test(first) && !looksLikeNumber(first) && !isForeignNumber(first)
 }
 
 const badRow = (line: Line, fields: string[], layout: Layout) => {

@@ -1,3 +1,4 @@
+import { AppError } from '../errors/app-error'
 import type { TableReading } from '../schemas/measurement'
 import { firstBytes, type ByteSource } from './byte-source'
 import { foreignKind, kindBytes } from './file-kind'
@@ -17,20 +18,28 @@ const zeroBytesOn = (bytes: Uint8Array, parity: 0 | 1): number => {
   return count
 }
 
-const isValidUtf8 = (source: ByteSource): boolean => {
-  const decoder = new TextDecoder('utf-8', { fatal: true })
+const beginsAsUtf8 = (first: Uint8Array): boolean => {
   try {
-    for (const piece of source()) decoder.decode(piece, { stream: true })
-    decoder.decode()
+    // A character may be cut at the end of the piece, so the decoder is told that more follows.
+    new TextDecoder('utf-8', { fatal: true }).decode(first, { stream: true })
     return true
   } catch {
     return false
   }
 }
 
+/** The file holds bytes that the encoding does not know. */
+export class WrongEncodingError extends AppError {
+  constructor(encoding: Encoding) {
+    const { detail, issues } = unreadable({}, `bytes that are not ${encoding}`, `text in ${encoding}`)
+    super('measurement/unreadable', { detail, issues })
+  }
+}
+
 /**
- * Encoding of a text file: by its byte order mark, by the zero bytes of UTF-16, by whether it is valid UTF-8, and
- * Windows-1252 (a superset of Latin-1 and ASCII) otherwise. Refuses what is no text.
+ * Encoding of a text file by its beginning: its byte order mark, the zero bytes of UTF-16, whether it is valid UTF-8,
+ * and Windows-1252 (a superset of Latin-1 and ASCII) otherwise. Refuses what is no text. Reading on as UTF-8 can still
+ * end in a WrongEncodingError; then it is Windows-1252 as well.
  */
 export const detectEncoding = (source: ByteSource): Encoding => {
   const first = firstBytes(source, sniffBytes)
@@ -45,7 +54,7 @@ export const detectEncoding = (source: ByteSource): Encoding => {
   if (odd > many && even === 0) return 'utf-16le'
   if (even > many && odd === 0) return 'utf-16be'
   if (even + odd > 0) throw unreadable({}, 'bytes of value 0', 'delimited text without binary data')
-  return isValidUtf8(source) ? 'utf-8' : 'windows-1252'
+  return beginsAsUtf8(first) ? 'utf-8' : 'windows-1252'
 }
 
 export interface Line {
@@ -62,7 +71,7 @@ function* decode(source: ByteSource, encoding: Encoding): Generator<string> {
     for (const piece of source()) yield decoder.decode(piece, { stream: true })
     yield decoder.decode()
   } catch (error) {
-    if (error instanceof TypeError) throw unreadable({}, `bytes that are not ${encoding}`, `text in ${encoding}`)
+    if (error instanceof TypeError) throw new WrongEncodingError(encoding)
     throw error
   }
 }

@@ -89,9 +89,10 @@ export const openWorkbench = async (): Promise<Workbench> => {
         groupId,
         `insert into parameter_set_versions (group_id, set_id, version, parameters, content_hash, created_by)
          values ($1, $2, 1, $3, $4, $5)`,
-        [groupId, set.id, JSON.stringify(parameters), contentHash(parameters), userId],
+        [groupId, set?.id, JSON.stringify(parameters), contentHash(parameters), userId],
       )
-      return set!.id
+      if (!set) throw new Error('expected the new set')
+      return set.id
     },
     addTrial: (groupId, userId, behaviour) =>
       bench.addSet(groupId, userId, { modes: [{ label: behaviour, energyMeV: 5, huangRhys: 0.1 }] }),

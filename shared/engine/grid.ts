@@ -6,7 +6,7 @@
  *   ensemble dt sig <= 0.6. The wings of the Lorentzian that fold back all the same are corrected in closed form.
  * - Window: until less than `cutFraction` of the signal's time integral is left (`coherence-decay.ts`): the total decay,
  *   homogeneous and thermal; a linear signal also ends with the ensemble, an echo does not.
- * - Padding: at least `padding` times the window, so that a width holds ten points or more.
+ * - Padding: until the narrowest line holds ten points or more, within the limits.
  *
  * Limits: 2^20 samples in one dimension, 4096 a side in two. A model that needs more, or whose signal never ends, is
  * refused with the field to change. Spec: tests/engine/grid.spec.ts.
@@ -54,7 +54,8 @@ interface Rules {
   shownMass: number
   marginWidths: number
   cutFraction: number
-  padding: number
+  /** Points that the narrowest line gets by zero padding. */
+  pointsPerWidth: number
   samples: number
   /** Bins a side that are kept. */
   kept: number
@@ -66,7 +67,7 @@ const LINEAR: Rules = {
   shownMass: 1e-4,
   marginWidths: 20,
   cutFraction: 1e-9,
-  padding: 8,
+  pointsPerWidth: 16,
   samples: limits.linearSamples,
   kept: limits.linearSamples,
 }
@@ -77,7 +78,7 @@ const MAP: Rules = {
   shownMass: 3e-2,
   marginWidths: 8,
   cutFraction: 3e-5,
-  padding: 4,
+  pointsPerWidth: 8,
   samples: limits.mapSamples,
   kept: 512,
 }
@@ -155,8 +156,13 @@ const chosen = (choice: Choice): GridResult => {
     }
   }
   const spanMeV = PLANCK_MEV_PS / stepPs
+  // Linear lines and the diagonal of a map have the ensemble width, cuts of a map do not.
+  const narrowest = rules === LINEAR ? Math.max(width, model.ensembleFwhmMeV) : width
   const viewMeV = Math.min(spanMeV / 2, shown)
-  let padded = Math.min(nextPowerOfTwo(rules.padding * samples), Math.max(nextPowerOfTwo(samples), rules.samples))
+  let padded = Math.min(
+    nextPowerOfTwo(Math.max(samples, (rules.pointsPerWidth * spanMeV) / narrowest)),
+    Math.max(nextPowerOfTwo(samples), rules.samples),
+  )
   const stored = (length: number) => 2 * Math.ceil((viewMeV * length) / spanMeV / 2) * 2
   while (stored(padded) > rules.kept && padded / 2 >= samples) padded /= 2
   const stride = Math.ceil(stored(padded) / rules.kept)

@@ -1,5 +1,6 @@
 import fc from 'fast-check'
 import { describe, expect, it } from 'vitest'
+import { thermalWidthMeV } from '../../shared/engine/bath-integrals'
 import { decayWindow, linearDecay, octaveTimes, withEnsemble } from '../../shared/engine/coherence-decay'
 import { GAUSSIAN_FWHM_PER_SIGMA, PLANCK_MEV_PS } from '../../shared/engine/constants'
 import { chooseLinearGrid, chooseMapGrid, type GridResult, type SpectralGrid } from '../../shared/engine/grid'
@@ -94,7 +95,8 @@ describe('grids', () => {
         expect(grid.warnings).toEqual([])
       }
       const linear = gridOf(chooseLinearGrid(model))
-      expect(linear.energyStepMeV).toBeLessThan(Math.max(model.zeroPhononFwhmMeV, model.ensembleFwhmMeV) / 10)
+      const homogeneous = model.zeroPhononFwhmMeV + thermalWidthMeV(model, model.temperatureK)
+      expect(linear.energyStepMeV).toBeLessThan(Math.max(homogeneous, model.ensembleFwhmMeV) / 10)
       expect(2 * gridOf(chooseMapGrid(model, 0)).halfBins).toBeLessThanOrEqual(512)
     }
   })

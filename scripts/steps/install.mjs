@@ -24,13 +24,12 @@ export const findDrift = () => {
 /** Brings node_modules to what package-lock.json says. Costs milliseconds when it is there already. */
 export const ensureInstalled = async () => {
   const drift = findDrift()
-  if (!drift) await ensureKernel()
-  if (!drift && existsSync(inProject('.nuxt/tsconfig.json'))) return false
   if (drift) {
     console.log(`Installing packages with npm ci (${drift}) ...`)
+    // Runs the script "prepare" as well. Building takes the development tools too, whatever NODE_ENV says.
     await run('npm', ['ci', '--include=dev', '--no-audit', '--no-fund', '--loglevel=error'])
-  } else {
-    await run('npx', ['nuxt', 'prepare'], { quiet: true })
+    return
   }
-  return true
+  await ensureKernel()
+  if (!existsSync(inProject('.nuxt/tsconfig.json'))) await run('npx', ['nuxt', 'prepare'], { quiet: true })
 }

@@ -12,23 +12,32 @@ import { getFileStore } from '../storage/current'
 /** A table of this size is read within a few milliseconds; anything larger would keep other requests waiting. */
 const inlineBytes = 16 * 1024
 
-const endedSentence = {
-  'time-limit': 'The file could not be read within 30 seconds; expected a table of numbers.',
-  lost: 'The file needs more memory to be read than a table of numbers does.',
-  stopped: 'The reading of the file was stopped.',
-} as const
+/** How a thread that used up its heap ends. */
+const isOutOfMemory = (cause: unknown): boolean =>
+  cause instanceof Error && 'code' in cause && cause.code === 'ERR_WORKER_OUT_OF_MEMORY'
+
+const refusalOf = (ended: TaskEndedError): Error => {
+  if (ended.end === 'stopped') return new AppError('service/unavailable', { cause: ended })
+  if (ended.end === 'time-limit')
+    return new AppError('measurement/unreadable', {
+      detail: 'The file could not be read within 30 seconds; expected a table of numbers.',
+      cause: ended,
+    })
+  if (isOutOfMemory(ended.cause))
+    return new AppError('measurement/unreadable', {
+      detail: 'The file needs more memory to be read than a table of numbers does.',
+      cause: ended,
+    })
+  // Not the file's fault: the thread could not work at all.
+  return ended
+}
 
 const inThread = async (path: string, work: TableTask): Promise<TableAnswer> => {
   try {
     return await readTableInThread(path, work)
   } catch (error) {
     if (error instanceof TablePoolFullError) throw new AppError('service/unavailable', { cause: error })
-    if (error instanceof TaskEndedError)
-      throw new AppError(error.end === 'stopped' ? 'service/unavailable' : 'measurement/unreadable', {
-        detail: endedSentence[error.end],
-        cause: error,
-      })
-    throw error
+    throw error instanceof TaskEndedError ? refusalOf(error) : error
   }
 }
 

@@ -1,3 +1,4 @@
+import { limits } from '../utils/limits'
 import type { ByteSource } from './byte-source'
 import { isBlank, isComment, splitFields } from './fields'
 import { isForeignNumber, type Layout } from './layout'
@@ -66,6 +67,13 @@ export const scanBody = (source: ByteSource, encoding: Encoding, layout: Layout)
     }
     if (stray !== undefined) throw badRow(stray.line, stray.fields, layout)
     rows += 1
+    // Said here as well as by the reading pass, so that a file of millions of rows is not looked at to its end.
+    if (rows > limits.measurementPoints)
+      throw unreadable(
+        { line: line.number },
+        `more than ${limits.measurementPoints} rows`,
+        `at most ${limits.measurementPoints}`,
+      )
     lastRow = line.number
     for (const index of layout.numeric) addEvidence(evidence, fields[index] ?? '', line.number)
   }

@@ -9,6 +9,9 @@ export type Encoding = TableReading['encoding']
 /** Longest line the reader takes, in characters: far above any table of 1000 columns of numbers. */
 export const maxLineLength = 100_000
 
+/** Most lines of a file: every row that may be stored, a long header and footer, and as many remarks again. */
+export const maxLines = 300_000
+
 const sniffBytes = 64 * 1024
 
 /** UTF-16 without a mark: Latin text has its zero bytes on one side only. */
@@ -94,6 +97,7 @@ export function* readLines(source: ByteSource, encoding: Encoding): Generator<Li
       if (match.index - start > maxLineLength) throw tooLong(number)
       yield { number, text: text.slice(start, match.index) }
       number += 1
+      if (number > maxLines) throw unreadable({}, `more than ${maxLines} lines`, `a table of at most ${maxLines} lines`)
       start = match.index + match[0].length
     }
     rest = text.slice(start)

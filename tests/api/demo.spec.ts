@@ -1,7 +1,9 @@
 import { readFileSync, rmSync, statSync } from 'node:fs'
+import { join } from 'node:path'
 import { setTimeout as pause } from 'node:timers/promises'
 import { beforeAll, describe, expect, inject, it } from 'vitest'
 import { loadDemo, type Demo } from '../../scripts/demo/load-demo'
+import { projectRoot } from '../support/server'
 import { Client } from './support/client'
 import { sql } from './support/database'
 
@@ -9,6 +11,8 @@ let demo: Demo
 const load = () => loadDemo({ databaseUrl: inject('databaseUrl'), storageDir: inject('storageDir') })
 
 beforeAll(async () => {
+  // Larger tables are read by a thread; the built server's entries serve this process as well.
+  process.env.WORKERS_DIR = join(projectRoot, '.output/server/workers')
   demo = await load()
 })
 

@@ -44,9 +44,9 @@ describe('uploads that are too large', () => {
 
   it('64 MiB + 1 byte are refused while they stream in, and the connection is closed', async () => {
     const bytes = limits.uploadBytes + 1
-    const answer = await leavingNothing(groupId, () =>
-      sendPieces(owner(), filesPath(), lengthOf(bytes), content(bytes)),
-    )
+    // The end of the form never comes: whoever waited for it would wait in vain.
+    const withoutEnd = [...content(bytes)].slice(0, -1)
+    const answer = await leavingNothing(groupId, () => sendPieces(owner(), filesPath(), lengthOf(bytes), withoutEnd))
     expect(answer.status, answer.text.slice(0, 300)).toBe(413)
     expect(answer.text).toMatch(/input\/too-large/)
     expect(answer.text).toMatch(/67108864 bytes/)

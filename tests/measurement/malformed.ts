@@ -125,6 +125,11 @@ export const malformed: readonly Malformed[] = [
     says: /more than 200000 rows/,
   },
   {
+    name: 'too-many-lines.csv',
+    make: () => text(`Energy (meV);OD\n${good()}\n${'\n'.repeat(300_001)}`)(),
+    says: /more than 300000 lines/,
+  },
+  {
     name: 'header-of-6000-lines.csv',
     make: () => text(`${rows(6000, () => 'remark')}\n${good()}\n`)(),
     says: /no rows of numbers/,

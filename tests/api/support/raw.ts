@@ -71,7 +71,7 @@ export const sendPieces = async (
     // Lets the answer in between two pieces.
     await new Promise((done) => setImmediate(done))
   }
-  await Promise.race([ended, new Promise((done) => setTimeout(done, 10_000).unref())])
+  await Promise.race([ended, new Promise((done) => setTimeout(done, 90_000).unref())])
   socket.destroy()
   const status = Number(/^HTTP\/1\.1 (\d{3})/.exec(received)?.[1] ?? 0)
   return { status, text: received, waitedMs, sentBytes, closed }

@@ -6,11 +6,9 @@ import {
   confirmSession,
   createSession,
   listSessions,
-  removeDeadSessions,
   removeSession,
   removeSessionByToken,
 } from '../database/repositories/sessions.repository'
-import { removeOldAttempts } from '../database/repositories/attempts.repository'
 import { logger } from '../utils/logger'
 import type { SignedIn } from './access.service'
 
@@ -51,9 +49,3 @@ export const endOwnSession = async (signedIn: SignedIn, sessionId: string, reque
 }
 
 export const confirmOwnSession = (sessionId: string): Promise<void> => confirmSession(getDatabase(), sessionId)
-
-/** Rows that no longer mean anything: ended sessions, counts of old attempts. */
-export const removeStaleRows = async (): Promise<void> => {
-  await removeDeadSessions(getDatabase())
-  await removeOldAttempts(getDatabase())
-}

@@ -56,6 +56,18 @@ describe('the process', () => {
   })
 })
 
+describe('a server that lacks something it needs', () => {
+  it.each([
+    ['NUXT_SESSION_PASSWORD', { NUXT_SESSION_PASSWORD: 'short' }],
+    ['NUXT_SESSION_PASSWORD', { NUXT_SESSION_PASSWORD: '' }],
+    ['DATABASE_URL', { DATABASE_URL: '' }],
+    ['NUXT_BASE_URL', { NUXT_BASE_URL: 'linewright' }],
+    ['NUXT_TRUSTED_PROXIES', { NUXT_TRUSTED_PROXIES: 'all' }],
+  ])('does not start, and names %s', async (name, change) => {
+    await expect(startServer({ env: { ...env(), ...change } })).rejects.toThrow(`${name}: expected`)
+  })
+})
+
 describe('without its database', () => {
   it('the server lives, is not ready, answers 503 at once, and recovers by itself', async () => {
     const person = await register('Patient Person')

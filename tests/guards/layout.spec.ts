@@ -7,7 +7,7 @@ const rooms = ['app', 'server', 'shared', 'workers', 'drizzle', 'tests', 'script
 const kept = ['.ci', ...rooms]
 
 /** Made by tools and ignored by git. */
-const made = ['.git', '.nuxt', '.output', '.data', 'node_modules', 'coverage']
+const made = ['.git', '.nuxt', '.output', '.data', '.kernel', 'node_modules', 'coverage']
 
 describe('the layout of the house', () => {
   it('has no folder at the top beside its rooms', () => {

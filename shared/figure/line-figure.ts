@@ -22,7 +22,8 @@ export const drawing = (id: string, z: number, axis: { x: number; y: number }, c
   clip,
   z,
   data: [[0, 0]],
-  renderItem: () => ({ type: 'group', silent: true, children }),
+  // Merging children by index leaves remains of the figure before it; each figure is drawn afresh.
+  renderItem: () => ({ type: 'group', silent: true, $mergeChildren: false, children }),
 })
 
 export const axisOption = (

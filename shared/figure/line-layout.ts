@@ -111,8 +111,9 @@ const panelOf = (
   }
 }
 
+/** A tenth wider than Source Sans 3: where a file meets another font, labels and titles still keep apart. */
 const widest = (ticks: AxisTicks, size: number): number =>
-  ticks.labels.reduce((width, label) => Math.max(width, textWidth(label, size)), 0)
+  ticks.labels.reduce((width, label) => Math.max(width, 1.1 * textWidth(label, size)), 0)
 
 /** Where everything of a line figure stands, in CSS pixels. Pure arithmetic, so page and server agree. */
 export const lineLayout = (figure: LineFigure, frame: FigureFrame): LineLayout => {
@@ -147,7 +148,7 @@ export const lineLayout = (figure: LineFigure, frame: FigureFrame): LineLayout =
   return {
     style,
     xRange,
-    xTicks: linearTicks(xRange, Math.max(2, Math.round(width / 90)), width),
+    xTicks: linearTicks(xRange, Math.max(2, Math.round(width / 75)), width),
     main: place(mainProbe),
     right: rightProbe && place(rightProbe),
     residual: residualProbe && place(residualProbe),

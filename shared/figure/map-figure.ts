@@ -154,7 +154,7 @@ const barLabels = (layout: MapLayout, figure: MapFigure): unknown[] => {
   }))
   const label = labelWithFactor(figure.valueLabel ?? '', ticks.factorExponent)
   if (!label) return texts
-  const widest = Math.max(0, ...ticks.labels.map((text) => textWidth(text, style.fontSize)))
+  const widest = Math.max(0, ...ticks.labels.map((text) => 1.1 * textWidth(text, style.fontSize)))
   return [
     ...texts,
     {

@@ -38,8 +38,9 @@ const margins = (style: FigureStyle, labels: { y: number; value: number; title: 
   right: Math.ceil(edge + 14 + barWidth + 6 + labels.value + (labels.title ? style.titleSize + 16 : 6)),
 })
 
+/** A tenth wider than Source Sans 3: where a file meets another font, labels and titles still keep apart. */
 const widest = (ticks: AxisTicks, size: number): number =>
-  ticks.labels.reduce((width, label) => Math.max(width, textWidth(label, size)), 0)
+  ticks.labels.reduce((width, label) => Math.max(width, 1.1 * textWidth(label, size)), 0)
 
 const measure = (figure: MapFigure, frame: { width: number; mode: FigureFrame['mode'] }, side: number) => {
   const style = figureStyle(frame.mode, frame.width)

@@ -1,5 +1,6 @@
 import { fileURLToPath } from 'node:url'
 import Icons from 'unplugin-icons/vite'
+import { zodWithoutEval } from './scripts/zod-without-eval'
 
 const here = (path: string) => fileURLToPath(new URL(path, import.meta.url))
 
@@ -69,7 +70,7 @@ export default defineNuxtConfig({
     nodeTsConfig: { include: ['../scripts/**/*.ts', '../drizzle.config.ts', '../vitest.config.ts'] },
   },
   vite: {
-    plugins: [Icons({ compiler: 'vue3', autoInstall: false })],
+    plugins: [Icons({ compiler: 'vue3', autoInstall: false }), zodWithoutEval()],
     worker: { format: 'es' },
     // In development the worker's script comes from Vite, past the middleware that sets the headers; the page demands this.
     server: { headers: { 'cross-origin-embedder-policy': 'require-corp' } },

@@ -35,6 +35,9 @@ export const runLinear = (collector: RunCollector, model: LineModel, grid: Spect
 
 const shifted = (offsets: Float64Array, centre: number): Float64Array => offsets.map((offset) => centre + offset)
 
+const LASER_NOTE =
+  'Maps and slices are weighted with the laser spectrum I(E1) I(E3), local oscillator included; absorption and emission are not.'
+
 /** Maps and slices of one temperature at all waiting times. */
 export const runMaps = (
   collector: RunCollector,
@@ -65,6 +68,7 @@ export const runMaps = (
   const atTimes = broadeningAtTimes(model, grid, waitingTimesPs.includes(0))
   collector.poll()
   checkKernel(collector, model, grid, waitingTimesPs[0]!)
+  if (model.laser && t === 0) collector.notes.push(LASER_NOTE)
 
   waitingTimesPs.forEach((waitingTimePs, w) => {
     const broadening = broadeningForWait(model, grid, waitingTimePs, atTimes)

@@ -26,16 +26,25 @@ export interface SidebandReach {
 
 const POINTS_PER_E = 12
 const OCTAVE_STEPS = 2
+/** Lower end of the axis in units of the low-energy scale. */
+const LOWEST = 1e-5
 
 /** Phonon energies (meV) with their Huang-Rhys weights S and the thermal part 2 n S. */
 const spectralLines = (model: LineModel) => {
+  let drift = 0
+  let spread = 0
   const energies: number[] = []
   const cold: number[] = []
   const hot: number[] = []
   const th = thermalFrequencyOf(model.temperatureK)
   for (const term of model.bath) {
-    const { density, lowScale, reach } = toContinuum(term)
-    const from = Math.log(lowScale * 1e-5)
+    const { density, low, lowScale, reach } = toContinuum(term)
+    // Below the axis J = c w^p: its linear and quadratic terms in s, which p near 0 puts there almost wholly.
+    const start = lowScale * LOWEST
+    const below = low.coefficient > 0 ? (low.coefficient * start ** low.exponent) / low.exponent / Math.PI : 0
+    drift += HBAR_MEV_PS * below
+    spread += 2 * th * HBAR_MEV_PS ** 2 * below
+    const from = Math.log(start)
     const count = Math.ceil((Math.log(reach) - from) * POINTS_PER_E)
     const step = (Math.log(reach) - from) / count
     for (let i = 0; i <= count; i++) {
@@ -52,11 +61,17 @@ const spectralLines = (model: LineModel) => {
     cold.push(mode.huangRhys)
     hot.push(mode.thermalHuangRhys - mode.huangRhys)
   }
-  return { energies: Float64Array.from(energies), cold: Float64Array.from(cold), hot: Float64Array.from(hot) }
+  return {
+    energies: Float64Array.from(energies),
+    cold: Float64Array.from(cold),
+    hot: Float64Array.from(hot),
+    drift,
+    spread,
+  }
 }
 
 export const sidebandReach = (model: LineModel): SidebandReach => {
-  const { energies, cold, hot } = spectralLines(model)
+  const { energies, cold, hot, drift, spread } = spectralLines(model)
   const sigma = model.ensembleFwhmMeV / GAUSSIAN_FWHM_PER_SIGMA
   const scale = Math.max(
     energies.reduce((a, b) => Math.max(a, b), 0),
@@ -70,9 +85,9 @@ export const sidebandReach = (model: LineModel): SidebandReach => {
   // A cold lower tail ends at E0: its bound falls as 1/s, so s goes far.
   for (let k = -10 * OCTAVE_STEPS; k <= 12 * OCTAVE_STEPS; k++) {
     const s = 2 ** (k / OCTAVE_STEPS) / scale
-    const gaussian = (sigma * s * sigma * s) / 2
-    let up = gaussian
-    let down = gaussian
+    const gaussian = ((sigma * sigma + spread) * s * s) / 2
+    let up = gaussian + drift * s
+    let down = gaussian - drift * s
     for (let i = 0; i < energies.length; i++) {
       const rise = Math.expm1(energies[i]! * s)
       const fall = Math.expm1(-energies[i]! * s)

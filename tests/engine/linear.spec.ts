@@ -39,6 +39,15 @@ describe('absorption at given energies', () => {
     expect(largest(absorption.map((value, i) => Math.abs(found[i]! - value) / peak))).toBeLessThan(1e-10)
   })
 
+  it.each(referenceCases('fluorescence'))(
+    'equals the emission of the reference %s',
+    (_, { parameters, samples, values }) => {
+      const { fluorescence, peak } = values as unknown as { fluorescence: number[]; peak: number }
+      const found = emissionAt(modelOf(parameters), Float64Array.from(samples!.points as number[]))
+      expect(largest(fluorescence.map((value, i) => Math.abs(found[i]! - value) / peak))).toBeLessThan(1e-10)
+    },
+  )
+
   it.each(referenceCases('absorptionFwhm'))('gives the width of the reference %s', (_, { parameters, values }) => {
     const expected = values as unknown as { fwhmMeV: number; leftMeV: number; rightMeV: number; peakPerMeV: number }
     const found = absorptionFwhm(modelOf(parameters))
@@ -233,6 +242,21 @@ describe('sampled sums', () => {
   const model = richModel({ temperatureK: 33 })
   const [stepPs, n] = [0.02, 512]
   const broadening = lineBroadening(model, 33, { stepPs, samples: n })
+
+  it.each(referenceCases('linearSampled'))('equal the reference %s', (_, { parameters, samples: asked, values }) => {
+    const given = parameters as unknown as { samples: number; timeStepPs: number }
+    const reference = values as unknown as {
+      absorption: number[]
+      fluorescence: number[]
+      absorptionPeakOnGrid: number
+    }
+    const own = modelOf(parameters)
+    const g0 = lineBroadening(own, own.temperatureK, { stepPs: given.timeStepPs, samples: given.samples })
+    const found = linearSampled(own, given.timeStepPs, g0, asked!.points as number[])
+    const peak = reference.absorptionPeakOnGrid
+    expect(largest(reference.absorption.map((v, i) => Math.abs(v - found.absorption[i]!)))).toBeLessThan(1e-11 * peak)
+    expect(largest(reference.fluorescence.map((v, i) => Math.abs(v - found.emission[i]!)))).toBeLessThan(1e-11 * peak)
+  })
 
   it('are the plain trapezoid at every bin', () => {
     const signal = linearSignal(model, broadening, stepPs)

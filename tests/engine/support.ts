@@ -27,5 +27,9 @@ export const parameterSet = (changes: Partial<ParameterSet> = {}): ParameterSet 
 export const relativeError = (found: number, expected: number, floor = 0): number =>
   found === expected ? 0 : Math.abs(found - expected) / Math.max(floor, Math.abs(expected))
 
-/** Largest of values, NaN when one is NaN (Math.max keeps NaN). */
-export const largest = (values: Iterable<number>): number => Math.max(0, ...values)
+/** Largest of values and 0, NaN when one is NaN. */
+export const largest = (values: Iterable<number>): number => {
+  let most = 0
+  for (const value of values) if (!(value <= most)) most = value
+  return most
+}

@@ -9,7 +9,12 @@ export const useSessionStore = defineStore('session', () => {
   const known = ref(false)
   let loading: Promise<void> | undefined
 
+  /** Unsaved work in memory belongs to this person and to nobody who signs in after them. */
+  let workOf: string | undefined
+
   const accept = (answer: SessionAnswer) => {
+    if (answer.user && workOf !== answer.user.id) useWorkingSetStore().clear()
+    workOf = answer.user?.id ?? workOf
     user.value = answer.user
     groups.value = answer.groups
     known.value = true

@@ -120,15 +120,15 @@ export const pages: PageEntry[] = [
 
 interface Listing {
   sets: { id: string; name: string; latestVersion: number }[]
-  runs: { id: string; state: string; set: { id: string } }[]
+  runs: { id: string; state: string; set: { id: string; name: string } }[]
   measurements: { id: string; name: string; kind: string }[]
 }
 
 /**
  * The demo group's objects as the signed-in person sees them: a set with its finished run, and a measured absorption.
- * Waits for the run, which is computed in the background.
+ * Waits for the run, which is computed in the background: any of the demo's, or that of one set.
  */
-export const findPlace = async (page: Page, limitMs = 180_000): Promise<Place> => {
+export const findPlace = async (page: Page, setName?: string, limitMs = 180_000): Promise<Place> => {
   const read = async <T>(path: string): Promise<T> => {
     const answer = await page.request.get(`/api${path}`)
     if (!answer.ok()) throw new Error(`GET /api${path}: expected 200; found ${answer.status()}`)
@@ -139,7 +139,7 @@ export const findPlace = async (page: Page, limitMs = 180_000): Promise<Place> =
   const deadline = performance.now() + limitMs
   for (;;) {
     const { runs } = await read<Listing>(`/groups/${groupId}/runs`)
-    const run = runs.find(({ state }) => state === 'done')
+    const run = runs.find(({ state, set }) => state === 'done' && (setName === undefined || set.name === setName))
     if (run) {
       const { measurements } = await read<Listing>(`/groups/${groupId}/measurements`)
       const measurement = measurements.find(({ kind, name }) => kind === 'absorption' && name.includes('A1'))

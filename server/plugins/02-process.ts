@@ -1,3 +1,4 @@
+import type { H3Event } from 'h3'
 import { defineNitroPlugin } from 'nitropack/runtime'
 import { logger } from '../utils/logger'
 import { endPhase, onShutdown, refuseRequests } from '../utils/shutdown'
@@ -20,7 +21,19 @@ const crash = (kind: string, error: unknown): void => {
     .finally(exit)
 }
 
+/**
+ * Node takes the socket away from a request whose body was abandoned. When the answer is out, the framework marks that
+ * socket as idle without looking, and would throw outside of any request; so it is given back just before.
+ */
+const keepSocket = ({ req, res }: H3Event['node']): void => {
+  const { socket } = req
+  res.prependOnceListener('finish', () => {
+    if (!req.socket) Object.defineProperty(req, 'socket', { value: socket, writable: true, configurable: true })
+  })
+}
+
 export default defineNitroPlugin((nitro) => {
+  nitro.hooks.hook('request', (event) => keepSocket(event.node))
   onShutdown('database pool', closePool, 'close')
   nitro.hooks.hook('close', async () => {
     await endPhase('drain')

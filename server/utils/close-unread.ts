@@ -11,6 +11,7 @@ export const closeUnreadRequest = (event: H3Event): void => {
   const { req, res } = event.node
   if (!hasBody(event) || req.complete) return
   if (!res.headersSent) res.setHeader('connection', 'close')
+  const socket = res.socket
   req.pause()
-  res.once('finish', () => setTimeout(() => req.socket.destroy(), graceMs).unref())
+  res.once('finish', () => setTimeout(() => socket?.destroy(), graceMs).unref())
 }

@@ -5,18 +5,38 @@ import { AppError, type Issue } from '../../shared/errors/app-error'
 const tooLarge = (limit: number) =>
   new AppError('input/too-large', { detail: `This address takes at most ${limit} bytes; more were sent.` })
 
-/** Whole body, counted while it arrives: a length that is missing or wrong changes nothing. */
-export const readLimited = async (event: H3Event, limit: number): Promise<Buffer> => {
+/**
+ * Whole body, counted while it arrives: a length that is missing or wrong changes nothing. Beyond the limit the rest is
+ * left unread and the request stays whole: destroying it would take the socket away from the answer.
+ */
+export const readLimited = (event: H3Event, limit: number): Promise<Buffer> => {
   const request = event.node.req
-  if (Number(request.headers['content-length'] ?? 0) > limit) throw tooLarge(limit)
-  const chunks: Buffer[] = []
-  let length = 0
-  for await (const chunk of request as AsyncIterable<Buffer>) {
-    length += chunk.length
-    if (length > limit) throw tooLarge(limit)
-    chunks.push(chunk)
-  }
-  return Buffer.concat(chunks, length)
+  if (Number(request.headers['content-length'] ?? 0) > limit) return Promise.reject(tooLarge(limit))
+  return new Promise((done, fail) => {
+    const chunks: Buffer[] = []
+    let length = 0
+    const stop = () => {
+      request.off('data', onData).off('end', onEnd).off('error', onFailure).off('close', onClose)
+    }
+    const onData = (chunk: Buffer) => {
+      length += chunk.length
+      chunks.push(chunk)
+      if (length <= limit) return
+      stop()
+      request.pause()
+      fail(tooLarge(limit))
+    }
+    const onEnd = () => {
+      stop()
+      done(Buffer.concat(chunks, length))
+    }
+    const onFailure = (cause: unknown) => {
+      stop()
+      fail(new AppError('input/malformed', { detail: 'The request ended before its body did.', cause }))
+    }
+    const onClose = () => onFailure(undefined)
+    request.on('data', onData).on('end', onEnd).on('error', onFailure).on('close', onClose)
+  })
 }
 
 /** Whether the client announced a body, of whatever length. */

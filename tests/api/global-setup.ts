@@ -46,8 +46,11 @@ export default async function setup(project: TestProject) {
   project.provide('sessionPassword', sessionPassword)
   project.provide('storageDir', storageDir)
   return async () => {
+    const crashed = server.process.exitCode !== null || /"event":"process\.(uncaught|unhandled)/.test(server.output())
     await server.stop()
     await dropDatabase(name)
     rmSync(folder, { recursive: true, force: true })
+    // Whatever the tests sent, the server must have outlived it.
+    if (crashed) throw new Error(`the server did not survive the tests:\n${server.output().slice(-4000)}`)
   }
 }

@@ -78,6 +78,15 @@ describe('body', () => {
     await expect(readLimited(eventOf([], { 'content-length': '11' }), 10)).rejects.toThrow('at most 10 bytes')
   })
 
+  it('that breaks off is no body', async () => {
+    const request = new Readable({ read: () => undefined })
+    const event = { node: { req: Object.assign(request, { headers: {} }) } } as unknown as H3Event
+    const reading = readLimited(event, 10)
+    request.push('half')
+    request.destroy()
+    await expect(reading).rejects.toThrow('ended before its body did')
+  })
+
   it('never reaches the prototype of anything', () => {
     for (const text of ['{"__proto__":{"a":1}}', '[{"x":{"__proto__":1}}]', '{"constructor":{"prototype":{"a":1}}}']) {
       expect(codeOf(() => parseBody(Buffer.from(text)))).toBe('input/malformed')

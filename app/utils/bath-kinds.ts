@@ -69,6 +69,21 @@ const kinds: Record<BathTerm['kind'], BathKind> = {
       relativePermittivity: 12.9,
     },
   },
+  tabulated: {
+    name: 'table',
+    formula: 'J(ω): monotone cubic through the points, ω^p below the first, 0 above the last',
+    start: {
+      kind: 'tabulated',
+      energiesMeV: [0.5, 1, 1.5, 2, 3, 4, 5],
+      densityMeV: [0.05, 0.3, 0.6, 0.7, 0.4, 0.1, 0],
+      lowEnergyExponent: 3,
+    },
+  },
+  expression: {
+    name: 'formula',
+    formula: 'J(ω): ħJ in meV as a formula of E = ħω in meV',
+    start: { kind: 'expression', formula: '0.2 * E^3 / 4 * exp(-E / 2)' },
+  },
 }
 
 const members = new Map(BathTermSchema.options.map((option) => [option.shape.kind.value as BathTerm['kind'], option]))

@@ -5,7 +5,7 @@ import type { Quantity } from '#shared/schemas/quantity'
 export type SchemaField = { path: string[]; optional: boolean } & (
   | { type: 'quantity'; quantity: Quantity }
   | { type: 'choice'; options: string[] }
-  | { type: 'numbers' }
+  | { type: 'numbers'; quantity: Quantity | undefined }
   | { type: 'text' }
 )
 
@@ -31,6 +31,10 @@ export const schemaFields = (object: z.ZodObject, parent: string[] = []): Schema
     if (isQuantity(quantity)) return [{ path, optional, type: 'quantity', quantity }]
     if (schema instanceof z.ZodEnum) return [{ path, optional, type: 'choice', options: schema.options.map(String) }]
     if (schema instanceof z.ZodObject) return schemaFields(schema, path)
-    if (schema instanceof z.ZodArray) return [{ path, optional, type: 'numbers' }]
+    if (schema instanceof z.ZodArray) {
+      const element = unwrap(schema.element).schema
+      const each = element instanceof z.ZodType ? element.meta()?.quantity : undefined
+      return [{ path, optional, type: 'numbers', quantity: isQuantity(each) ? each : undefined }]
+    }
     return [{ path, optional, type: 'text' }]
   })

@@ -15,10 +15,12 @@
  */
 import type { Continuum, DensityIntegrals } from './bath/continuum'
 import { gaussLegendre, legendreAnalysis } from './gauss-legendre'
+import { PANEL_TERMS, panelEdges, refineEdges } from './panel-edges'
+import { nodesFromPanels } from './panel-nodes'
 import { sphericalBessel } from './spherical-bessel'
 import type { FrequencyNodes } from './uniform-sums'
 
-const TERMS = 20
+const TERMS = PANEL_TERMS
 /** Panels below this w t go through the series; its first omitted term is then 5e-15. */
 const SERIES_LIMIT = 0.1
 const SERIES_TERMS = 4
@@ -34,32 +36,9 @@ export interface FrequencyPanels {
   indexAbove: (frequency: number) => number
   /** Nodes and weights of the panels from index `begin` on, fine enough for plain sums up to a time. */
   nodesFrom: (begin: number, longestPs: number) => FrequencyNodes
-  /** Largest omitted Legendre coefficient, as a fraction of the largest kept one. */
+  /** Error of g0 by omitted Legendre coefficients, relative to max(1, |g0|). */
   errorEstimate: number
   integrals: DensityIntegrals
-}
-
-/** Ascending panel edges from `lowest` to the upper end: doubling, no wider than allowed, with the breaks as edges. */
-const panelEdges = (terms: readonly Continuum[], lowest: number): number[] => {
-  const forced = terms
-    .flatMap(({ upper, breaks }) => [...(breaks ?? []), upper])
-    .filter((edge) => edge > lowest)
-    .sort((a, b) => a - b)
-  const edges = [lowest]
-  for (const target of forced) {
-    let edge = edges.at(-1)!
-    while (edge < target) {
-      const width = terms.reduce(
-        (least, term) => (term.upper > edge ? Math.min(least, term.panelWidth(edge)) : least),
-        edge,
-      )
-      // The last piece before a target is stretched or halved rather than leaving a sliver.
-      const left = target - edge
-      edge = left <= 1.01 * width ? target : left < 2 * width ? edge + left / 2 : edge + width
-      edges.push(edge)
-    }
-  }
-  return edges
 }
 
 /**
@@ -70,7 +49,12 @@ export const buildFrequencyPanels = (terms: readonly Continuum[], th: number, lo
   const lowScale = terms.reduce((least, term) => Math.min(least, term.lowScale), th > 0 ? th : Infinity)
   const lowest = Math.min(1e-7 * lowScale, SERIES_LIMIT / Math.max(longestPs, 1e-12))
   const density = (w: number): number => terms.reduce((sum, term) => (w < term.upper ? sum + term.density(w) : sum), 0)
-  const edges = panelEdges(terms, lowest)
+  const integrand = (w: number): number => {
+    const f = density(w) / (Math.PI * w * w)
+    return th > 0 ? f / Math.tanh(w / (2 * th)) : f
+  }
+  const coarse = panelEdges(terms, lowest)
+  const edges = terms.some(({ needsRefinement }) => needsRefinement) ? refineEdges(coarse, integrand) : coarse
   const count = edges.length - 1
   const { nodes, weights } = gaussLegendre(TERMS)
   const analysis = legendreAnalysis(TERMS)
@@ -100,7 +84,8 @@ export const buildFrequencyPanels = (terms: readonly Continuum[], th: number, lo
   const values = new Float64Array(TERMS)
   const thermalValues = new Float64Array(TERMS)
   let largest = 0
-  let omitted = 0
+  let relative = 0
+  let absolute = 0
   for (let panel = 0; panel < count; panel++) {
     const start = edges[panel]!
     const half = (edges[panel + 1]! - start) / 2
@@ -149,9 +134,10 @@ export const buildFrequencyPanels = (terms: readonly Continuum[], th: number, lo
       if (n >= TERMS - 2) tail = Math.max(tail, Math.abs(a))
       else size = Math.max(size, Math.abs(a))
     }
-    // Weighted by w^2-limited importance: what a panel adds to g0 is at most its integral of f_T.
     largest = Math.max(largest, size * half)
-    omitted = Math.max(omitted, tail * half)
+    // What a panel leaves out is a share of what it adds to g0, and at most twice its integral: the smaller counts.
+    if (1 <= 2 * half * size) relative = Math.max(relative, tail / size)
+    else absolute += 2 * half * tail
   }
   // Panels at the low end that together hold less than rounding of the largest one add nothing to g0 at any time.
   let opening = 0
@@ -213,49 +199,6 @@ export const buildFrequencyPanels = (terms: readonly Continuum[], th: number, lo
     out[1]! += im
   }
 
-  /** Values of both expansions of a panel at z, by Clenshaw's recurrence. */
-  const valueAt = (panel: number, z: number, coefficients: Float64Array): number => {
-    let later = 0
-    let value = 0
-    for (let n = TERMS - 1; n >= 0; n--) {
-      const sign = (n >> 1) % 2 === 0 ? 1 : -1
-      const next =
-        sign * coefficients[panel * TERMS + n]! + ((2 * n + 1) / (n + 1)) * z * value - ((n + 1) / (n + 2)) * later
-      later = value
-      value = next
-    }
-    return value / (2 * halves[panel]!)
-  }
-
-  const nodesFrom = (first: number, longest: number): FrequencyNodes => {
-    const begin = Math.max(first, opening)
-    const rules = Array.from({ length: count - begin }, (_, k) => {
-      const phase = halves[begin + k]! * longest
-      const pieces = Math.ceil(phase / 60)
-      // A rule of n nodes integrates e^{i phase z} beside 20 polynomials to rounding from n = phase/2 + 24 on.
-      return { panel: begin + k, pieces, rule: gaussLegendre(8 * Math.ceil((phase / pieces / 2 + 24) / 8)) }
-    })
-    const total = rules.reduce((sum, { pieces, rule }) => sum + pieces * rule.nodes.length, 0)
-    const out = {
-      frequencies: new Float64Array(total),
-      thermal: new Float64Array(total),
-      vacuum: new Float64Array(total),
-    }
-    let index = 0
-    for (const { panel, pieces, rule } of rules) {
-      for (let piece = 0; piece < pieces; piece++) {
-        for (let i = 0; i < rule.nodes.length; i++) {
-          const z = (2 * piece + 1 + rule.nodes[i]!) / pieces - 1
-          const weight = (halves[panel]! * rule.weights[i]!) / pieces
-          out.frequencies[index] = centres[panel]! + halves[panel]! * z
-          out.thermal[index] = weight * valueAt(panel, z, thermal)
-          out.vacuum[index] = weight * valueAt(panel, z, vacuum)
-          index++
-        }
-      }
-    }
-    return out
-  }
   const indexAbove = (frequency: number): number => {
     let index = 0
     while (index < count && edges[index]! < frequency) index++
@@ -275,8 +218,9 @@ export const buildFrequencyPanels = (terms: readonly Continuum[], th: number, lo
   return {
     addAt,
     indexAbove,
-    nodesFrom,
-    errorEstimate: largest > 0 ? omitted / largest : 0,
+    nodesFrom: (begin, longest) =>
+      nodesFromPanels({ centres, halves, thermal, vacuum }, Math.max(begin, opening), longest),
+    errorEstimate: relative + absolute,
     integrals: {
       reorganization: odd[last]!,
       plateau,

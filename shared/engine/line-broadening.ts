@@ -31,6 +31,8 @@ import type { UniformTimes } from './uniform-sums'
 const FEW_TIMES = 300
 /** Phase of the ringing up to which polynomials in time, some ten radians each, are the cheaper way. */
 const POLYNOMIAL_PHASE = 120
+/** Above it the sums would need tens of millions of nodes: times are then evaluated one by one. */
+const LARGEST_PHASE = 2e7
 
 type Account = Pick<LineBroadening, 'errorEstimate' | 'method'>
 
@@ -98,7 +100,8 @@ const addContinuum = (
   const isOscillating = (term: BathTerm): boolean => {
     const { silent, ringing } = toContinuum(term)
     if (silent || !ringing || times.length < FEW_TIMES) return false
-    return ringing.frequency * Math.min(ringing.until, range.end) > POLYNOMIAL_PHASE
+    const phase = ringing.frequency * Math.min(ringing.until, range.end)
+    return phase > POLYNOMIAL_PHASE && phase < LARGEST_PHASE
   }
   const oscillating = range.uniform ? bath.filter(isOscillating) : []
   const rest = bath.filter((term) => !oscillating.includes(term))

@@ -1,9 +1,25 @@
 import { z } from 'zod'
+import { readFormula } from '../engine/bath/expression'
+import { formulaLanguage } from '../engine/bath/formula'
 import { limits } from '../utils/limits'
 import { quantities } from './quantities'
 import { quantitySchema } from './quantity'
 
 const q = quantitySchema
+
+const uniqueAscending = (what: string) => (values: number[], context: z.core.$RefinementCtx<number[]>) => {
+  values.forEach((value, index) => {
+    const before = values[index - 1]
+    if (before !== undefined && !(value > before)) {
+      context.addIssue({
+        code: 'custom',
+        path: [index],
+        message: `expected ${what} in ascending order without repeats; found ${value} after ${before}`,
+        input: value,
+      })
+    }
+  })
+}
 
 export const cutoffShapes = ['gaussian', 'exponential'] as const
 
@@ -63,12 +79,73 @@ export const ConfinedExcitonTermSchema = z.strictObject({
   relativePermittivity: q(quantities.relativePermittivity),
 })
 
-const bathKinds = ['powerLaw', 'overdamped', 'underdamped', 'logNormal', 'confinedExciton'] as const
+/** hbar J as a table: monotone cubic inside, a power of E below the first point, 0 above the last. */
+export const TabulatedTermSchema = z
+  .strictObject({
+    kind: z.literal('tabulated'),
+    energiesMeV: z.array(q(quantities.phononEnergyMeV)).superRefine(uniqueAscending('phonon energies')),
+    densityMeV: z.array(q(quantities.densityMeV)),
+    lowEnergyExponent: q(quantities.lowEnergyExponent).default(3),
+  })
+  .superRefine(({ energiesMeV, densityMeV }, context) => {
+    const refuse = (path: (string | number)[], message: string, input: unknown) =>
+      context.addIssue({ code: 'custom', path, message, input })
+    const positive = energiesMeV.filter((energy) => energy > 0).length
+    if (positive < 2 || energiesMeV.length > limits.tablePoints) {
+      refuse(['energiesMeV'], `expected 2 to ${limits.tablePoints} points above 0 meV; found ${positive}`, energiesMeV)
+    }
+    if (energiesMeV.length !== densityMeV.length) {
+      refuse(
+        ['densityMeV'],
+        `expected one value for each of the ${energiesMeV.length} phonon energies; found ${densityMeV.length}`,
+        densityMeV,
+      )
+    }
+    if (energiesMeV[0] === 0 && densityMeV[0] !== 0) {
+      refuse(['densityMeV', 0], `expected a spectral density of 0 at 0 meV; found ${densityMeV[0]} meV`, densityMeV[0])
+    }
+  })
+
+/** hbar J in meV as a formula of E in meV. */
+export const ExpressionTermSchema = z.strictObject({
+  kind: z.literal('expression'),
+  formula: z
+    .string({ error: 'expected a formula of E as a text' })
+    .trim()
+    .min(1, { error: `expected a formula of ${formulaLanguage}; found an empty text` })
+    .max(limits.formulaLength, { error: `expected a formula of at most ${limits.formulaLength} characters` })
+    .superRefine((formula, context) => {
+      try {
+        readFormula(formula)
+      } catch (error) {
+        const message = error instanceof Error ? error.message : String(error)
+        context.addIssue({ code: 'custom', message, input: formula })
+      }
+    }),
+})
+
+const bathKinds = [
+  'powerLaw',
+  'overdamped',
+  'underdamped',
+  'logNormal',
+  'confinedExciton',
+  'tabulated',
+  'expression',
+] as const
 
 /** Further bath kinds join this union; the engine dispatches on `kind`. */
 export const BathTermSchema = z.discriminatedUnion(
   'kind',
-  [PowerLawTermSchema, OverdampedTermSchema, UnderdampedTermSchema, LogNormalTermSchema, ConfinedExcitonTermSchema],
+  [
+    PowerLawTermSchema,
+    OverdampedTermSchema,
+    UnderdampedTermSchema,
+    LogNormalTermSchema,
+    ConfinedExcitonTermSchema,
+    TabulatedTermSchema,
+    ExpressionTermSchema,
+  ],
   { error: `expected a bath term of kind ${bathKinds.map((kind) => `"${kind}"`).join(', ')}` },
 )
 
@@ -96,20 +173,6 @@ export const GridOverrideSchema = z.strictObject({
   mapTimeStepPs: q(quantities.timeStepPs).optional(),
   mapSamples: gridSide(limits.mapSamples).optional(),
 })
-
-const uniqueAscending = (what: string) => (values: number[], context: z.core.$RefinementCtx<number[]>) => {
-  values.forEach((value, index) => {
-    const before = values[index - 1]
-    if (before !== undefined && !(value > before)) {
-      context.addIssue({
-        code: 'custom',
-        path: [index],
-        message: `expected ${what} in ascending order without repeats; found ${value} after ${before}`,
-        input: value,
-      })
-    }
-  })
-}
 
 /**
  * A parameter set: the one definition of the form, the route bodies, the stored version, the job and the downloaded
@@ -165,6 +228,8 @@ export type OverdampedTerm = z.infer<typeof OverdampedTermSchema>
 export type UnderdampedTerm = z.infer<typeof UnderdampedTermSchema>
 export type LogNormalTerm = z.infer<typeof LogNormalTermSchema>
 export type ConfinedExcitonTerm = z.infer<typeof ConfinedExcitonTermSchema>
+export type TabulatedTerm = z.infer<typeof TabulatedTermSchema>
+export type ExpressionTerm = z.infer<typeof ExpressionTermSchema>
 export type BathTerm = z.infer<typeof BathTermSchema>
 export type Mode = z.infer<typeof ModeSchema>
 export type Laser = z.infer<typeof LaserSchema>

@@ -10,6 +10,10 @@ export const limits = {
   waitingTimes: 256,
   modes: 64,
   bathTerms: 16,
+  /** Points of one tabulated spectral density. */
+  tablePoints: 2000,
+  /** Characters of one typed spectral density. */
+  formulaLength: 500,
   /** Runs that one group may have waiting at a time. */
   queuedRunsPerGroup: 20_000,
   /** Runs of one answer, newest first. */

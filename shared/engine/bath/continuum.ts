@@ -31,6 +31,8 @@ export interface Continuum {
    * from a `DampedOscillation`, it varies only on the scale of the time itself. Absent where it never oscillates for long.
    */
   ringing?: { frequency: number; until: number }
+  /** True where no rule of panel widths is known: panels are then halved until their coefficients have fallen. */
+  needsRefinement?: boolean
   /** Frequencies at which J or one of its derivatives jumps (table points); ascending. */
   breaks?: Float64Array
 }

@@ -6,9 +6,11 @@ import type { BathTerm } from '../../schemas/parameter-set'
 import { buildFrequencyPanels } from '../frequency-panels'
 import type { ClosedForm, Continuum, DampedOscillation, DensityIntegrals } from './continuum'
 import { confinedExcitonContinuum } from './confined-exciton'
+import { expressionContinuum, expressionIntegrals } from './expression'
 import { logNormalContinuum } from './log-normal'
 import { overdampedClosedForm, overdampedContinuum, overdampedIntegrals } from './overdamped'
 import { powerLawClosedForm, powerLawContinuum } from './power-law'
+import { tabulatedContinuum } from './tabulated'
 import {
   underdampedClosedForm,
   underdampedContinuum,
@@ -43,6 +45,8 @@ const kinds: Kinds = {
   },
   logNormal: { toContinuum: logNormalContinuum },
   confinedExciton: { toContinuum: confinedExcitonContinuum },
+  tabulated: { toContinuum: tabulatedContinuum },
+  expression: { toContinuum: expressionContinuum, integrals: expressionIntegrals },
 }
 
 const kindOf = (term: BathTerm): BathKind<BathTerm> => kinds[term.kind] as BathKind<BathTerm>

@@ -9,7 +9,7 @@
  *
  * Definitions and sources: `map.ts`, `edge-correction.ts`. `mapAt` sums on a grid whose span holds all but 1e-9 of the sidebands
  * and whose window leaves 1e-9 of the signal, with the end correction (fourth order in dt), and halves the step until two
- * answers agree. Cost: samples^2 per point. Spec: tests/engine/map-reference.spec.ts.
+ * answers agree. Cost: samples^2 for each distinct E3. Spec: tests/engine/map-reference.spec.ts.
  */
 import { decayWindow, echoDecay, ensembleSigma, homogeneousRate, linearDecay, withEnsemble } from './coherence-decay'
 import { HBAR_MEV_PS, PLANCK_MEV_PS } from './constants'
@@ -49,28 +49,46 @@ const turned = (series: ComplexSeries, w: number, stepPs: number): ComplexSeries
   return out
 }
 
-/** Sum of the signal times exp(i w1 t1 + i w3 t3), with the weights of the tables. */
-const doubleSum = (tables: SignalTables, w1: number, w3: number): Complex => {
+/** cos and sin of w t on the samples. */
+const wave = (w: number, n: number, stepPs: number): ComplexSeries => ({
+  re: Float64Array.from({ length: n }, (_, k) => Math.cos(w * k * stepPs)),
+  im: Float64Array.from({ length: n }, (_, k) => Math.sin(w * k * stepPs)),
+})
+
+/**
+ * Sums of the signal times exp(i w1 t1 + i w3 t3), with the weights of the tables, at every pair of frequencies. A row of
+ * the signal is made once for all of them, and summed once for each distinct w3.
+ */
+const doubleSums = (tables: SignalTables, pairs: readonly (readonly [number, number])[]): Complex[] => {
   const { samples: n, stepPs } = tables
   const row = { re: new Float64Array(n), im: new Float64Array(n) }
-  const c3 = Float64Array.from({ length: n }, (_, k) => Math.cos(w3 * k * stepPs))
-  const s3 = Float64Array.from({ length: n }, (_, k) => Math.sin(w3 * k * stepPs))
-  let re = 0
-  let im = 0
+  const distinct = [...new Set(pairs.map(([, w3]) => w3))]
+  const waves = distinct.map((w3) => wave(w3, n, stepPs))
+  const columns = pairs.map(([, w3]) => distinct.indexOf(w3))
+  const a = new Float64Array(distinct.length)
+  const b = new Float64Array(distinct.length)
+  const sums = pairs.map((): Complex => [0, 0])
   for (let i = 0; i < n; i++) {
     signalRow(tables, i, row)
-    let a = 0
-    let b = 0
-    for (let k = 0; k < n; k++) {
-      a += row.re[k]! * c3[k]! - row.im[k]! * s3[k]!
-      b += row.re[k]! * s3[k]! + row.im[k]! * c3[k]!
-    }
-    const c = Math.cos(w1 * i * stepPs)
-    const s = Math.sin(w1 * i * stepPs)
-    re += a * c - b * s
-    im += a * s + b * c
+    waves.forEach(({ re, im }, column) => {
+      let x = 0
+      let y = 0
+      for (let k = 0; k < n; k++) {
+        x += row.re[k]! * re[k]! - row.im[k]! * im[k]!
+        y += row.re[k]! * im[k]! + row.im[k]! * re[k]!
+      }
+      a[column] = x
+      b[column] = y
+    })
+    pairs.forEach(([w1], index) => {
+      const column = columns[index]!
+      const c = Math.cos(w1 * i * stepPs)
+      const s = Math.sin(w1 * i * stepPs)
+      sums[index]![0] += a[column]! * c - b[column]! * s
+      sums[index]![1] += a[column]! * s + b[column]! * c
+    })
   }
-  return [re, im]
+  return sums
 }
 
 const trapezoid = (edge: ComplexSeries, w: number, stepPs: number): Complex => {
@@ -110,10 +128,13 @@ const correctionAt = (edges: Edges, w1: number, w3: number, stepPs: number): Com
 const signalAt = (tables: SignalTables, offsets: readonly EnergyPair[], corrected: boolean): ComplexSeries => {
   const out = { re: new Float64Array(offsets.length), im: new Float64Array(offsets.length) }
   const edges = corrected ? edgesOf(tables) : undefined
-  offsets.forEach(([e1, e3], i) => {
-    const w1 = ((tables.rephasing ? -1 : 1) * e1) / HBAR_MEV_PS
-    const w3 = e3 / HBAR_MEV_PS
-    const [re, im] = doubleSum(tables, w1, w3)
+  const pairs = offsets.map(([e1, e3]): [number, number] => [
+    ((tables.rephasing ? -1 : 1) * e1) / HBAR_MEV_PS,
+    e3 / HBAR_MEV_PS,
+  ])
+  const sums = doubleSums(tables, pairs)
+  pairs.forEach(([w1, w3], i) => {
+    const [re, im] = sums[i]!
     const [a, b] = edges ? correctionAt(edges, w1, w3, tables.stepPs) : [0, 0]
     out.re[i] = re + a
     out.im[i] = im + b

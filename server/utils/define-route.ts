@@ -33,10 +33,12 @@ interface Input<P, Q, B> {
 }
 
 const toIssues = (error: z.ZodError): Issue[] =>
-  error.issues.map((issue) => ({
-    path: issue.path.map((step) => (typeof step === 'symbol' ? String(step) : step)),
-    message: issue.message,
-  }))
+  error.issues.flatMap((issue) => {
+    const path = issue.path.map((step) => (typeof step === 'symbol' ? String(step) : step))
+    if (issue.code !== 'unrecognized_keys') return [{ path, message: issue.message }]
+    // One place a key, so that each can be pointed at.
+    return issue.keys.map((key) => ({ path: [...path, key], message: `expected no key of this name; found "${key}"` }))
+  })
 
 const parseInput = <S extends Schema>(schema: S, value: unknown): z.output<S> => {
   const parsed = schema.safeParse(value)

@@ -23,8 +23,8 @@ export const traceContours = (part: MapPart, levels: readonly number[]): Contour
   if (count1 < 2 || count3 < 2 || levels.length === 0) return []
   const trace = contours().size([count3, count1]).smooth(true)
   // A negative level is traced on the mirrored map, so that its rings enclose the trough and not the rest of the map.
-  const mirrored = levels.some((level) => level < 0) ? Array.from(part.values, (value) => -value) : []
   const values = Array.from(part.values)
+  const mirrored = levels.some((level) => level < 0) ? values.map((value) => -value) : []
   return levels.map((level) => {
     const shape = level < 0 ? trace.contour(mirrored, -level) : trace.contour(values, level)
     const lines = shape.coordinates.flatMap((polygon) => polygon.flatMap((ring) => cutAtBorder(ring, count3, count1)))

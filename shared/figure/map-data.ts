@@ -49,40 +49,81 @@ export const visiblePart = (figure: MapFigure): MapPart => {
   }
 }
 
+/** For every wanted sample: the sample below it, the one above, and the weight of the latter. */
+const neighbours = (from: number, to: number) => {
+  const scale = to > 1 ? (from - 1) / (to - 1) : 0
+  const below = new Int32Array(to)
+  const above = new Int32Array(to)
+  const weight = new Float64Array(to)
+  for (let k = 0; k < to; k++) {
+    below[k] = Math.min(from - 1, Math.floor(k * scale))
+    above[k] = Math.min(from - 1, (below[k] as number) + 1)
+    weight[k] = k * scale - (below[k] as number)
+  }
+  return { scale, below, above, weight }
+}
+
 /** Bilinear resampling to other counts over the same samples; ends stay where they are. */
 export const resample = (part: MapPart, count1: number, count3: number): MapPart => {
   if (count1 === part.count1 && count3 === part.count3) return part
   const values = new Float64Array(count1 * count3)
-  const scale1 = count1 > 1 ? (part.count1 - 1) / (count1 - 1) : 0
-  const scale3 = count3 > 1 ? (part.count3 - 1) / (count3 - 1) : 0
-  const at = (i: number, j: number) => part.values[i * part.count3 + j] as number
+  const rows = neighbours(part.count1, count1)
+  const columns = neighbours(part.count3, count3)
+  // One axis after the other: a row between two rows first, then the samples along it.
+  const between = new Float64Array(part.count3)
   for (let i = 0; i < count1; i++) {
-    const u = i * scale1
-    const i0 = Math.min(part.count1 - 1, Math.floor(u))
-    const i1 = Math.min(part.count1 - 1, i0 + 1)
-    const f = u - i0
+    const low = (rows.below[i] as number) * part.count3
+    const high = (rows.above[i] as number) * part.count3
+    const f = rows.weight[i] as number
+    for (let j = 0; j < part.count3; j++) {
+      between[j] = (part.values[low + j] as number) * (1 - f) + (part.values[high + j] as number) * f
+    }
     for (let j = 0; j < count3; j++) {
-      const v = j * scale3
-      const j0 = Math.min(part.count3 - 1, Math.floor(v))
-      const j1 = Math.min(part.count3 - 1, j0 + 1)
-      const g = v - j0
+      const g = columns.weight[j] as number
       values[i * count3 + j] =
-        (at(i0, j0) * (1 - g) + at(i0, j1) * g) * (1 - f) + (at(i1, j0) * (1 - g) + at(i1, j1) * g) * f
+        (between[columns.below[j] as number] as number) * (1 - g) + (between[columns.above[j] as number] as number) * g
     }
   }
-  return { ...part, values, count1, count3, step1: part.step1 * scale1, step3: part.step3 * scale3 }
+  return { ...part, values, count1, count3, step1: part.step1 * rows.scale, step3: part.step3 * columns.scale }
 }
 
-/** Sides between which a map is painted: fewer are interpolated up, more are interpolated down. */
+/** Sides between which a map is painted, whatever its size on the page. */
 const paintSide = { min: 320, max: 768 }
 const contourSide = 256
 
-const bounded = (count: number, min: number, max: number): number =>
-  count < 2 ? count : Math.min(max, Math.max(min, count))
+/** Image pixels to a pixel of the page: sharp on dense screens, and no more than twice what any screen shows. */
+const pixelDensity = 1.5
 
-/** The part at the resolution it is painted with. */
-export const paintable = (part: MapPart): MapPart =>
-  resample(part, bounded(part.count1, paintSide.min, paintSide.max), bounded(part.count3, paintSide.min, paintSide.max))
+/** The part at the resolution it is painted with in a frame of that width; `oversampling` times finer on request. */
+export const paintable = (part: MapPart, width: number, oversampling = 1): MapPart => {
+  const wanted = Math.round(Math.max(paintSide.min, pixelDensity * width)) * oversampling
+  const side = Math.min(paintSide.max, wanted)
+  return resample(part, part.count1 < 2 ? part.count1 : side, part.count3 < 2 ? part.count3 : side)
+}
+
+/** Means of two by two samples. Drawing means instead of samples keeps a thin zero line from breaking into beads. */
+export const halve = (part: MapPart): MapPart => {
+  const count1 = part.count1 >> 1
+  const count3 = part.count3 >> 1
+  const values = new Float64Array(count1 * count3)
+  for (let i = 0; i < count1; i++) {
+    for (let j = 0; j < count3; j++) {
+      const at = 2 * i * part.count3 + 2 * j
+      const below = at + part.count3
+      const row = (part.values[at] as number) + (part.values[at + 1] as number)
+      values[i * count3 + j] = (row + (part.values[below] as number) + (part.values[below + 1] as number)) / 4
+    }
+  }
+  return {
+    values,
+    count1,
+    count3,
+    start1: part.start1 + part.step1 / 2,
+    start3: part.start3 + part.step3 / 2,
+    step1: 2 * part.step1,
+    step3: 2 * part.step3,
+  }
+}
 
 /** The part at the resolution contours are traced on. */
 export const contourable = (part: MapPart): MapPart =>

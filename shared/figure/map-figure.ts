@@ -1,7 +1,7 @@
 import { contourLevels, traceContours } from './contour-paths'
 import type { FigureFrame } from './line-description'
 import { axisOption, drawing, gridOption, type ChartOption } from './line-figure'
-import { contourable, paintable, visiblePart, type MapPart } from './map-data'
+import { contourable, halve, paintable, visiblePart, type MapPart } from './map-data'
 import type { MapFigure } from './map-description'
 import { paintBar, paintMap, type IndexedImage } from './map-image'
 import { edgePaths } from './map-edges'
@@ -25,9 +25,11 @@ const imageElement = (image: unknown, left: number, top: number, width: number, 
 /** Pixel centres stand at the samples, so the image reaches half a step beyond the first and the last one. */
 const mapImage = (part: MapPart, layout: MapLayout, figure: MapFigure, toImage: ImageSource) => {
   // Interpolated as it is, then compressed: the other way round, sign changes would show the grid.
-  const fine = paintable(part)
-  const shares = { ...fine, values: fine.values.map(layout.values.toShare) }
-  const image = toImage(paintMap(shares, { low: figure.signed ? -1 : 0, high: 1 }, figure.signed, layout.style.mode))
+  const isCompressed = figure.scale === 'asinh'
+  const dense = paintable(part, layout.box.width, isCompressed ? 2 : 1)
+  const shares = { ...dense, values: dense.values.map(layout.values.toShare) }
+  const fine = isCompressed ? halve(shares) : shares
+  const image = toImage(paintMap(fine, { low: figure.signed ? -1 : 0, high: 1 }, figure.signed, layout.style.mode))
   const topLeft = toMapPixel(layout, {
     energy1: fine.start1 - fine.step1 / 2,
     energy3: fine.start3 + (fine.count3 - 0.5) * fine.step3,

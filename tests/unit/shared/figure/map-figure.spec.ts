@@ -3,6 +3,7 @@ import { describe, expect, it } from 'vitest'
 import { contourLevels, traceContours } from '../../../../shared/figure/contour-paths'
 import {
   contourable,
+  halve,
   interestingRange,
   paintable,
   reachOf,
@@ -96,7 +97,7 @@ describe('the part in sight', () => {
   })
 
   it('is interpolated to a side that paints smoothly and is traced on at most 256 samples', () => {
-    const fine = paintable(visiblePart(sampleMap()))
+    const fine = paintable(visiblePart(sampleMap()), 200)
     expect([fine.count1, fine.count3]).toEqual([320, 320])
     expect(fine.step1 * 319).toBeCloseTo(0.5 * 40, 9)
     const big = {
@@ -119,6 +120,13 @@ describe('the part in sight', () => {
       step3: 1,
     }
     expect([...resample(plane, 3, 3).values]).toEqual([0, 0.5, 1, 1, 1.5, 2, 2, 2.5, 3])
+  })
+
+  it('is averaged two by two without moving', () => {
+    const plane = Float64Array.from({ length: 24 }, (_, k) => 10 * Math.floor(k / 4) + (k % 4))
+    const halved = halve({ values: plane, count1: 6, count3: 4, start1: 100, start3: 200, step1: 2, step3: 1 })
+    expect(halved).toMatchObject({ count1: 3, count3: 2, start1: 101, start3: 200.5, step1: 4, step3: 2 })
+    expect([...halved.values]).toEqual([5.5, 7.5, 25.5, 27.5, 45.5, 47.5])
   })
 
   it('is found around what is not flat, alike on both axes', () => {

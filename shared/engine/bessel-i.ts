@@ -3,7 +3,7 @@
  *
  * Miller's downward recurrence I_(k-1)(z) = (2k/z) I_k(z) + I_(k+1)(z), normalised by e^z = I_0 + 2 sum_k I_k, which has
  * positive terms only and so loses nothing. Start order m + 9 sqrt(z) + 30: there I_k / I_0 < 1e-17.
- * Source: Abramowitz & Stegun (1964), 9.6.26 and 9.6.34. Relative accuracy 2e-15 (tests/engine/bessel-i.spec.ts).
+ * Source: Abramowitz & Stegun (1964), 9.6.26 and 9.6.34. Relative accuracy 2e-15 (tests/engine/special-functions.spec.ts).
  */
 export const besselIScaled = (maxOrder: number, z: number): Float64Array => {
   const out = new Float64Array(maxOrder + 1)

@@ -10,7 +10,8 @@
  */
 import Complex from 'complex.js'
 
-type ComplexNumber = InstanceType<typeof Complex>
+export { Complex }
+export type ComplexNumber = InstanceType<typeof Complex>
 
 /** Bernoulli numbers B_2, B_4, ... */
 const BERNOULLI = [1 / 6, -1 / 30, 1 / 42, -1 / 30, 5 / 66, -691 / 2730, 7 / 6, -3617 / 510, 43867 / 798, -174611 / 330]

@@ -1,6 +1,7 @@
 /**
  * All continuous bath terms as one function of time: closed forms where a kind has one, all other terms together on one
  * set of Legendre panels in frequency. A closed form may start at a time after 0; before it the term is on panels too.
+ * Source: the files of the kinds, and `frequency-panels.ts`. Spec: tests/engine/line-broadening.spec.ts.
  */
 import type { BathTerm } from '../schemas/parameter-set'
 import type { DampedOscillation, PointBroadening } from './bath/continuum'

@@ -1,6 +1,8 @@
 /**
  * The part of g0 that keeps oscillating, Re(amplitude e^{-(decay + i frequency) t}): taken out before g0 is turned into
  * polynomials in time and added again exactly, one exponential and one sine a time while it is above rounding.
+ * Source: the residue of the integrand of g0 at the complex frequency of the oscillator, derived in `bath/underdamped.ts`.
+ * Spec: tests/engine/damped-bath.spec.ts.
  */
 import type { DampedOscillation, PointBroadening } from './bath/continuum'
 

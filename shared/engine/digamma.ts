@@ -4,7 +4,7 @@
  *   psi(1 + x) - psi(1) = sum_(k>=1) x / (k (k + x))
  *
  * Eleven terms directly, the rest by the asymptotic series of psi at 12 + x and at 12, joined so that nothing cancels.
- * Source: Abramowitz & Stegun (1964), 6.3.16 and 6.3.18. Accuracy: 3e-16 relative (tests/engine/overdamped.spec.ts).
+ * Source: Abramowitz & Stegun (1964), 6.3.16 and 6.3.18. Accuracy: 3e-16 relative (tests/engine/damped-bath.spec.ts).
  */
 const BERNOULLI = [1 / 12, -1 / 120, 1 / 252, -1 / 240, 1 / 132, -691 / 32760, 1 / 12] as const
 

@@ -40,8 +40,8 @@ export const gaussLegendre = (n: number): QuadratureRule => {
     if (n % 2 === 1 && i === (n - 1) / 2) x = 0
     derivative = legendreWithDerivative(n, x)[1]
     const weight = 2 / ((1 - x * x) * derivative * derivative)
-    nodes[n - 1 - i] = x
     nodes[i] = -x
+    nodes[n - 1 - i] = x
     weights[n - 1 - i] = weight
     weights[i] = weight
   }

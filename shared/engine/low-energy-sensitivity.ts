@@ -2,7 +2,7 @@
  * How much a result rests on the power of E with which a tabulated spectral density was continued towards E = 0, where a
  * measured or computed table says nothing: the zero-phonon weight with that exponent p, with p - 1 and with p + 1.
  *
- * Source of the rule (a weight exists for p > 2, at 0 K for p > 1): `bath-integrals.ts`. Spec: tests/engine/tabulated-bath.spec.ts.
+ * Source: the definition of the weight in `bath-integrals.ts`. Spec: tests/engine/tabulated-bath.spec.ts.
  */
 import { zeroPhononWeight } from './bath-integrals'
 import type { Phonons } from './types'

@@ -1,6 +1,7 @@
 /**
  * Sentences about a parameter set that is valid but says the same thing twice, or claims a width that its lifetime does
  * not allow. Each names the fields and the numbers.
+ * Derived from gam >= 1/(2 T_1) and from the slope of Re g0 at long times (`bath-integrals.ts`). Spec: tests/engine/linewidth.spec.ts.
  */
 import type { ParameterSet } from '../schemas/parameter-set'
 import { toContinuum } from './bath/registry'

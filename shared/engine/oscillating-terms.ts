@@ -2,6 +2,7 @@
  * Terms whose g0 oscillates for as long as one looks (a sharp sideband, a tabulated density), on uniform times: the panels
  * below ten radians over the whole range are smooth and become polynomials in time, the others are summed by the
  * non-uniform Fourier transform.
+ * Source: `frequency-panels.ts` and `uniform-sums.ts`. Spec: tests/engine/compact-bath.spec.ts and tabulated-bath.spec.ts.
  */
 import type { BathTerm } from '../schemas/parameter-set'
 import { toContinuum } from './bath/registry'

@@ -1,6 +1,8 @@
 /**
  * Nodes and weights in frequency made from Legendre expansions on panels, fine enough for plain sums of cos wt and sin wt
  * up to a time: what the non-uniform Fourier transform needs.
+ * Source: Gauss-Legendre rules of `gauss-legendre.ts`; Jacobi-Anger growth of e^{iz} for their order (Abramowitz & Stegun
+ * (1964), 9.1.44). Spec: tests/engine/quadrature.spec.ts.
  */
 import { gaussLegendre } from './gauss-legendre'
 import { PANEL_TERMS } from './panel-edges'

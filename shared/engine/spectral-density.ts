@@ -1,6 +1,7 @@
 /**
  * Spectral density of the continuous bath for display: hbar J in meV at energies in meV, the sum over all terms.
  * Zero at and below E = 0; discrete modes are delta functions and do not enter.
+ * Definition of J: Mukamel (1995), ch. 8. Spec: tests/engine/bath-integrals.spec.ts.
  */
 import type { BathTerm } from '../schemas/parameter-set'
 import { toContinuum } from './bath/registry'

@@ -5,7 +5,7 @@
  *
  * Upward where that is stable (x above the highest order), else Miller's downward recurrence, normalised by the larger
  * of j_0 and j_1; below x = 1e-3 the first term of the power series x^n / (2n + 1)!! with its correction.
- * Source: Abramowitz & Stegun (1964), 10.1.2, 10.1.19 and 10.5. Relative to max |j_n|: 1e-15 (tests/engine/spherical-bessel.spec.ts).
+ * Source: Abramowitz & Stegun (1964), 10.1.2, 10.1.19 and 10.5. Relative to max |j_n|: 1e-15 (tests/engine/special-functions.spec.ts).
  */
 export const sphericalBessel = (x: number, count: number, out: Float64Array): void => {
   if (x < 1e-3) {

@@ -1,6 +1,7 @@
 /**
  * What every kind of continuous bath hands to the engine: a spectral density on angular frequencies, with the few facts
  * about it that quadrature and limits need. Frequencies in rad/ps; J in rad/ps (so that hbar J is an energy).
+ * Definition of J: C(t) = (1/pi) Int J(w) [coth(w/2th) cos wt - i sin wt] dw (Mukamel 1995, ch. 8).
  */
 
 export interface Continuum {

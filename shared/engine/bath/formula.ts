@@ -1,6 +1,8 @@
 /**
  * A typed formula of one variable as a function, by way of its syntax tree: the text is parsed, never run as a script, and
- * only numbers, E, pi, e, the operators + - * / ^ and the functions listed here are understood.
+ * only numbers, E, pi, e, the operators + - * / ^ and the functions listed here are understood. Precedence is that of the
+ * parser of mathjs; the tree is turned into closures here. Definition of each function: ECMAScript `Math`.
+ * Spec: tests/engine/expression-bath.spec.ts.
  */
 import { create, parseDependencies, type MathNode } from 'mathjs'
 

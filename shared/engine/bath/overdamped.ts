@@ -17,7 +17,7 @@
  *   Re g0 = (2 lambda / pi G) { gamma_E + ln y + [e^y E_1(y) - e^{-y} Ei(y)]/2 }
  *
  * Source: Mukamel, Principles of Nonlinear Optical Spectroscopy (1995), eqs. 8.48 to 8.49; sums by NIST Handbook (2010), 5.7.6 and
- * 5.5.4. Accuracy: 1e-13 relative to max(1, |g0|) (tests/engine/overdamped.spec.ts).
+ * 5.5.4. Accuracy: 1e-13 relative to max(1, |g0|) (tests/engine/damped-bath.spec.ts).
  */
 import type { OverdampedTerm } from '../../schemas/parameter-set'
 import { angularFrequencyOf } from '../constants'

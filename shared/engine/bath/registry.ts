@@ -1,6 +1,6 @@
 /**
  * The closed list of bath kinds. A kind is one file that turns its parameters into a `Continuum`, with closed forms where
- * it has them; its schema joins the union in shared/schemas/parameter-set.ts, and the compiler then asks for its row here.
+ * it has them (Source: named in its file); its schema joins the union in shared/schemas/parameter-set.ts, and the compiler then asks for its row here.
  */
 import type { BathTerm } from '../../schemas/parameter-set'
 import { buildFrequencyPanels } from '../frequency-panels'

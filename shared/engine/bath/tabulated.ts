@@ -10,7 +10,7 @@
  *
  * A point at E = 0 (which must hold 0) says nothing that p does not say, and is left out. The exponent is an assumption
  * where a table ends: `lowEnergySensitivity` tells how much the zero-phonon weight rests on it.
- * Source of the interpolation: `monotone-cubic.ts`. Accuracy of g0: 1e-12 of max(1, |g0|) (tests/engine/tabulated-bath.spec.ts).
+ * Source: Fritsch & Butland, SIAM J. Sci. Stat. Comput. 5, 300 (1984) for the interpolation. Accuracy of g0: 1e-12 of max(1, |g0|) (tests/engine/tabulated-bath.spec.ts).
  */
 import type { TabulatedTerm } from '../../schemas/parameter-set'
 import { angularFrequencyOf } from '../constants'

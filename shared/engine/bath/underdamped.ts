@@ -14,18 +14,15 @@
  * 2 Re{ -(lambda_a/a) e^{-at} } (imaginary part). J is linear at 0: the zero-phonon line has a thermal width, no weight.
  *
  * Source: Mukamel, Principles of Nonlinear Optical Spectroscopy (1995), ch. 8 (multimode Brownian oscillator); residues of
- * the integrand of g0. Accuracy: 1e-12 relative to max(1, |g0|) (tests/engine/underdamped.spec.ts).
+ * the integrand of g0. Accuracy: 1e-12 relative to max(1, |g0|) (tests/engine/damped-bath.spec.ts).
  */
-import Complex from 'complex.js'
 import type { UnderdampedTerm } from '../../schemas/parameter-set'
-import { digamma } from '../complex-functions'
+import { Complex, digamma, type ComplexNumber } from '../complex-functions'
 import { angularFrequencyOf } from '../constants'
 import { EULER_GAMMA } from '../exponential-integral'
 import { buildFrequencyPanels } from '../frequency-panels'
 import type { ClosedForm, Continuum, DampedOscillation, DensityIntegrals } from './continuum'
 import { MATSUBARA_FROM, MATSUBARA_TERMS } from './overdamped'
-
-type ComplexNumber = InstanceType<typeof Complex>
 
 const rates = (term: UnderdampedTerm) => {
   const frequency = angularFrequencyOf(term.energyMeV)

@@ -141,8 +141,11 @@ interface Products {
 export interface EdgeCorrection {
   /** Adds the correction to values at pairs of bins (m1[i], m3[i]), counted from E0 in steps of the padded transform. */
   addAt: (values: ComplexSeries, m1: ArrayLike<number>, m3: ArrayLike<number>) => void
-  /** Adds it to a row-major map on the kept bins. */
-  addToMap: (values: ComplexSeries, bins: MapBins) => void
+  /**
+   * Adds it to a row-major map on the kept bins. Returns a bound of its last term, that of the second derivative: what is left
+   * out is smaller, so this is the estimate of the discretisation error, in units of the values.
+   */
+  addToMap: (values: ComplexSeries, bins: MapBins) => number
 }
 
 /** -i c0, c1, i c2 at all bins. */
@@ -202,8 +205,19 @@ export const edgeCorrection = (tables: SignalTables, padded: number): EdgeCorrec
         const im = values.im.subarray(i * count, (i + 1) * count)
         left.forEach((a, order) => addScaled(re, im, a.re[i]!, a.im[i]!, right[order]!))
       }
+      return [ORDERS - 1, 2 * ORDERS - 1].reduce(
+        (sum, k) => sum + largestModulus(left[k]!) * largestModulus(right[k]!),
+        0,
+      )
     },
   }
+}
+
+/** Largest modulus of a complex series. */
+export const largestModulus = ({ re, im }: ComplexSeries): number => {
+  let most = 0
+  for (let i = 0; i < re.length; i++) most = Math.max(most, Math.hypot(re[i]!, im[i]!))
+  return most
 }
 
 const addProducts = (values: ComplexSeries, a: ComplexSeries, b: ComplexSeries): void => {

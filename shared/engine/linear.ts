@@ -29,6 +29,8 @@ export interface LinearSpectra {
   emission: Float64Array
   /** |a| at the end of the window: what the cut leaves, as a fraction of a(0). */
   signalAtEnd: number
+  /** Largest folded wing that was taken off, as a fraction of the maximum. */
+  foldedShare: number
 }
 
 /** a(t_j) = exp(-g0 - gam t - sig^2 t^2/2) on t_j = j stepPs. Overwrites nothing; exponents below -700 give 0. */
@@ -133,7 +135,17 @@ export const linearSpectra = (
     emission[i] = scale * spectrum[mirrored]! - mirrorFolded
   }
   const last = signal.re.length - 1
-  return { energiesMeV, absorption, emission, signalAtEnd: Math.hypot(signal.re[last]!, signal.im[last]!) }
+  const folding = (offset: number) => foldedWings(offset, spanMeV, model.zeroPhononFwhmMeV / 2, moments)
+  const edge = halfBins * stride * energyStepMeV
+  const peak = absorption.reduce((a, b) => Math.max(a, b), 0)
+  return {
+    energiesMeV,
+    absorption,
+    emission,
+    signalAtEnd: Math.hypot(signal.re[last]!, signal.im[last]!),
+    // The images grow towards the ends of the span.
+    foldedShare: Math.max(folding(-edge), folding(edge)) / peak,
+  }
 }
 
 /** Bins of the plain trapezoid sum that a grid means: S(E0 + 2 pi hbar m/(n dt)), no padding and no correction, in 1/meV. */

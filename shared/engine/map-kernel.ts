@@ -2,7 +2,7 @@
  * Chooses the kernel of a map: the compiled one where this host and these tables allow it, else the plain one of `map.ts`.
  * Both give the same numbers to rounding, 1e-14 of the maximum (tests/engine/map.spec.ts).
  */
-import { edgeCorrection } from './edge-correction'
+import { edgeCorrection, largestModulus } from './edge-correction'
 import { kernelAbsorptiveMap } from './kernel/absorptive-map'
 import { kernelMap } from './kernel/complex-map'
 import { loadKernel } from './kernel/load-kernel'
@@ -26,9 +26,15 @@ export const absorptiveMap = (tables: MapTables, bins: MapBins): Float64Array =>
   return rephasing.re.map((value, i) => value + nonRephasing.re[i]!)
 }
 
+export interface CorrectedMap extends ComplexSeries {
+  /** Estimate as a fraction of the largest modulus; null where no correction was possible. */
+  discretisationError: number | null
+}
+
 /** Complex map with its end correction: what a run stores. */
-export const correctedMap = (tables: SignalTables, bins: MapBins, stop?: () => boolean): ComplexSeries => {
+export const correctedMap = (tables: SignalTables, bins: MapBins, stop?: () => boolean): CorrectedMap => {
   const map = signalMap(tables, bins, stop)
-  edgeCorrection(tables, bins.padded)?.addToMap(map, bins)
-  return map
+  const left = edgeCorrection(tables, bins.padded)?.addToMap(map, bins)
+  const largest = largestModulus(map)
+  return { ...map, discretisationError: left === undefined || largest === 0 ? null : left / largest }
 }

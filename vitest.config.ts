@@ -64,6 +64,13 @@ export default defineConfig({
       ...(withNuxt ? [await nuxtProject()] : []),
       withServer('api', 3, 120_000),
       withServer('browser', 4, 240_000),
+      // Longer than a test may be: `npm run drill -- NAME`.
+      nodeProject('drills', 5, {
+        include: ['tests/drills/**/*.drill.ts'],
+        testTimeout: 3_600_000,
+        hookTimeout: 240_000,
+        maxWorkers: 1,
+      }),
     ],
   },
 })

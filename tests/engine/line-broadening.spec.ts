@@ -3,7 +3,8 @@ import { describe, expect, it } from 'vitest'
 import { HBAR_MEV_PS } from '../../shared/engine/constants'
 import { lineBroadening, lineBroadeningAt } from '../../shared/engine/line-broadening'
 import type { Phonons, TimeGrid } from '../../shared/engine/types'
-import { arbitraryPhonons, arbitraryTemperature, logUniform } from './arbitrary'
+import { BathTermSchema } from '../../shared/schemas/parameter-set'
+import { arbitraryBathTerm, arbitraryPhonons, arbitraryTemperature, logUniform } from './arbitrary'
 import { largest, powerLaw, relativeError } from './support'
 
 const modes = [
@@ -173,6 +174,36 @@ describe('properties of g0 for any valid set', () => {
         },
       ),
       { numRuns: 100 },
+    )
+  })
+
+  it('holds for every kind of bath, one by one and on grids, which agree', () => {
+    fc.assert(
+      fc.property(arbitraryBathTerm, arbitraryTemperature, logUniform(1e-3, 1), (term, temperatureK, stepPs) => {
+        expect(BathTermSchema.safeParse(term).error?.issues ?? []).toEqual([])
+        const phonons: Phonons = { bath: [term], modes: [] }
+        const grid = { stepPs, samples: 400 }
+        const whole = lineBroadening(phonons, temperatureK, grid)
+        const indices = [1, 3, 20, 150, 399]
+        const single = lineBroadeningAt(
+          phonons,
+          temperatureK,
+          Float64Array.from(indices, (index) => index * stepPs),
+        )
+        const size = (k: number) => Math.max(1, Math.hypot(single.re[k]!, single.im[k]!))
+        return (
+          [...whole.re, ...whole.im, ...single.im].every(Number.isFinite) &&
+          whole.re.every((value) => value >= -whole.errorEstimate) &&
+          single.re.every((value) => value >= 0 && value < Infinity) &&
+          whole.errorEstimate < 1e-7 &&
+          indices.every(
+            (index, k) =>
+              Math.hypot(whole.re[index]! - single.re[k]!, whole.im[index]! - single.im[k]!) <=
+              whole.errorEstimate * size(k),
+          )
+        )
+      }),
+      { numRuns: 150 },
     )
   })
 })

@@ -50,11 +50,15 @@ export const gaussLegendre = (n: number): QuadratureRule => {
   return rule
 }
 
+const analyses = new Map<number, Float64Array>()
+
 /**
  * Matrix that turns values at the n Gauss nodes into Legendre coefficients: a_m = (2m + 1)/2 sum_i weight_i P_m(x_i) f_i,
  * row-major [m][i]. The expansion sum a_m P_m(x) interpolates f at the nodes.
  */
 export const legendreAnalysis = (n: number): Float64Array => {
+  const known = analyses.get(n)
+  if (known) return known
   const { nodes, weights } = gaussLegendre(n)
   const matrix = new Float64Array(n * n)
   for (let i = 0; i < n; i++) {
@@ -68,5 +72,6 @@ export const legendreAnalysis = (n: number): Float64Array => {
       value = next
     }
   }
+  analyses.set(n, matrix)
   return matrix
 }

@@ -4,7 +4,7 @@
  * parser of mathjs; the tree is turned into closures here. Definition of each function: ECMAScript `Math`.
  * Spec: tests/engine/expression-bath.spec.ts.
  */
-import { create, parseDependencies, type MathNode } from 'mathjs'
+import { create, parseDependencies, type MathNode } from 'mathjs/number'
 
 const { parse } = create({ ...parseDependencies })
 

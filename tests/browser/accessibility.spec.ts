@@ -64,10 +64,14 @@ describe.each(['light', 'dark'] as const)('in the %s theme', (colorScheme) => {
 
   it.each(pages.filter(({ guest }) => !guest))('$name can be read on a phone', async ({ path, ready }) => {
     const { page, complaints } = views.narrow
+    await page.setViewportSize({ width: 390, height: 844 })
     await page.goto(path(place))
     await ready(page)
     const overflow = await page.evaluate(() => document.documentElement.scrollWidth - window.innerWidth)
     expect(overflow, 'pixels beside the screen').toBeLessThanOrEqual(0)
+    // All of the page at once: what happens to lie below a strip that stays in view counts as covered otherwise.
+    const height = await page.evaluate(() => document.documentElement.scrollHeight)
+    await page.setViewportSize({ width: 390, height })
     expect(await findViolations(page)).toEqual([])
     expect(complaints.splice(0)).toEqual([])
   })

@@ -1,7 +1,7 @@
 import { onNotice, type Notices } from '../database/notifications'
 import { getDatabase } from '../database/client'
 import { filterAllowed } from '../database/repositories/event-streams.repository'
-import { listChangedRuns } from '../database/repositories/runs.repository'
+import { listChangedRuns, readClock } from '../database/repositories/runs.repository'
 import { withGroup } from '../database/with-group'
 import { logger } from '../utils/logger'
 import { AppError } from '../../shared/errors/app-error'
@@ -22,6 +22,8 @@ interface Stream {
   sink: RunSink
   /** Newest moment sent of each run, so that an older notice that arrives late changes nothing. */
   sent: Map<string, number>
+  /** Moment of the database up to which this page has been told everything. */
+  heardAt: number
 }
 
 const checkMs = 2500
@@ -38,6 +40,7 @@ const offer = (stream: Stream, event: RunEvent, at: number): void => {
   if (before !== undefined && before > at) return
   stream.sent.delete(event.id)
   stream.sent.set(event.id, at)
+  stream.heardAt = Math.max(stream.heardAt, at)
   if (stream.sent.size > rememberedRuns) {
     const [oldest] = stream.sent.keys()
     if (oldest !== undefined) stream.sent.delete(oldest)
@@ -51,9 +54,14 @@ const onRun = ({ groupId, at, ...event }: Notices['run'][0]): void => {
 
 const sendChanges = async (groupId: string, since: number | null, receivers: Iterable<Stream>): Promise<void> => {
   const from = since === null ? null : new Date(since - overlapMs)
-  const rows = await withGroup(groupId, (tx) => listChangedRuns(tx, groupId, from))
+  const { now, rows } = await withGroup(groupId, async (tx) => ({
+    now: await readClock(tx),
+    rows: await listChangedRuns(tx, groupId, from),
+  }))
   for (const stream of receivers) {
-    if (streams.has(stream)) for (const row of rows) offer(stream, toRunEvent(row), row.changedAt.getTime())
+    if (!streams.has(stream)) continue
+    for (const row of rows) offer(stream, toRunEvent(row), row.changedAt.getTime())
+    stream.heardAt = Math.max(stream.heardAt, now)
   }
 }
 
@@ -62,9 +70,7 @@ const catchUp = async (): Promise<void> => {
   const groups = new Map<string, Stream[]>()
   for (const stream of streams) groups.set(stream.groupId, [...(groups.get(stream.groupId) ?? []), stream])
   for (const [groupId, members] of groups) {
-    const heard = members.map((stream) => Math.max(...stream.sent.values()))
-    const since = Math.min(...heard)
-    await sendChanges(groupId, Number.isFinite(since) ? since : null, members)
+    await sendChanges(groupId, Math.min(...members.map(({ heardAt }) => heardAt)), members)
   }
 }
 
@@ -109,7 +115,7 @@ export const openRunStream = async (
       detail: `One person may keep ${limits.eventStreamsPerUser} event streams open; close another page first.`,
     })
   }
-  const stream: Stream = { ...owner, sink: open(), sent: new Map() }
+  const stream: Stream = { ...owner, sink: open(), sent: new Map(), heardAt: since ?? 0 }
   const end = () => {
     streams.delete(stream)
     unwatch()

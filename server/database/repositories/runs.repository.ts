@@ -122,6 +122,12 @@ export const listUnfinishedRuns = (tx: GroupTx, groupId: string, states: RunStat
     .from(runs)
     .where(and(eq(runs.groupId, groupId), inArray(runs.state, states), unfinished))
 
+/** Milliseconds since 1970 by the clock that also stamps the changes. */
+export const readClock = async (tx: GroupTx): Promise<number> => {
+  const { rows } = await tx.execute<{ now: number }>(sql`select (extract(epoch from ${moment}) * 1000)::float8 as now`)
+  return rows[0]?.now ?? 0
+}
+
 /** Runs that changed since a moment, oldest change first; those that still go on when no moment is given. */
 export const listChangedRuns = (tx: GroupTx, groupId: string, since: Date | null): Promise<RunRow[]> =>
   tx

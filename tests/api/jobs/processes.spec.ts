@@ -231,6 +231,40 @@ describe('an outage of the database', () => {
     expect(await countResults()).toBe(2)
   })
 
+  it('of a second is answered with 503, ends by itself, and costs an open page nothing', async () => {
+    proxy = await openProxy(bench.databaseUrl)
+    const server = await startWeb({ DATABASE_URL: proxy.url, NUXT_QUEUE: 'none' })
+    const reader = await register('Reader', new Client(server.baseUrl))
+    const group = await createGroup(reader, 'Readers')
+    const stream = await openEvents(reader.client, group)
+    const setId = await bench.addTrial(group, reader.id, 'hold 10')
+    await proxy.cut()
+    const begun = performance.now()
+    const refused = await reader.client.get(`/api/groups/${group}/runs`)
+    expect([refused.status, refused.json.code]).toEqual([503, 'service/unavailable'])
+    expect(performance.now() - begun).toBeLessThan(6000)
+    // Asked for and computed by others, while this server hears nothing.
+    start()
+    const run = await createRun({ groupId: group, userId: reader.id, setId, version: 1 })
+    await until(
+      () => getRun(group, run.id),
+      ({ state }) => state === 'done',
+    )
+    expect(stream.messages).toEqual([])
+    await proxy.mend()
+    const mended = performance.now()
+    await until(
+      async () => (await reader.client.get(`/api/groups/${group}/runs`)).status,
+      (status) => status === 200,
+    )
+    expect(performance.now() - mended).toBeLessThan(5000)
+    await until(
+      () => stream.messages.map(({ id, state }) => `${id} ${state}`),
+      (heard) => heard.includes(`${run.id} done`),
+    )
+    expect(server.process.exitCode).toBeNull()
+  })
+
   it('may be there before the processes are', async () => {
     proxy = await openProxy(bench.databaseUrl, { cut: true })
     const worker = start({ DATABASE_URL: proxy.url })

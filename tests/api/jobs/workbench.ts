@@ -124,7 +124,7 @@ export const compileTrialWorkers = async (): Promise<{ directory: string; remove
 export const until = async <T>(
   ask: () => Promise<T> | T,
   satisfies: (answer: T) => boolean,
-  limitMs = 20_000,
+  limitMs = 60_000,
 ): Promise<T> => {
   const begun = performance.now()
   for (;;) {

@@ -8,6 +8,7 @@ export const usePreview = (input: () => PreviewInput | null) => {
   const estimate = shallowRef<RunEstimate | null>(null)
   /** What the shown preview was computed from. */
   const shownInput = shallowRef<PreviewInput | null>(null)
+  const elapsedMs = ref(0)
   const message = ref('')
   const pending = ref(false)
 
@@ -18,6 +19,7 @@ export const usePreview = (input: () => PreviewInput | null) => {
       message.value = answer.ok ? '' : answer.message
       if (!answer.ok) return
       preview.value = answer.preview
+      elapsedMs.value = answer.elapsedMs
       estimate.value = answer.estimate
       shownInput.value = from ?? null
     },
@@ -32,5 +34,5 @@ export const usePreview = (input: () => PreviewInput | null) => {
     { immediate: true },
   )
   onScopeDispose(queue.stop)
-  return { preview, estimate, message, pending, shownInput }
+  return { preview, estimate, elapsedMs, message, pending, shownInput }
 }

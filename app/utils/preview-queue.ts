@@ -10,7 +10,8 @@ export interface PreviewRequest {
 }
 
 export type PreviewAnswer =
-  { id: number; ok: true; preview: Preview; estimate: RunEstimate } | { id: number; ok: false; message: string }
+  | { id: number; ok: true; preview: Preview; estimate: RunEstimate; elapsedMs: number }
+  | { id: number; ok: false; message: string }
 
 export type PreviewInput = Omit<PreviewRequest, 'id'>
 

@@ -6,8 +6,10 @@ import type { PreviewAnswer, PreviewRequest } from '../utils/preview-queue'
 /** The engine off the page's own thread: a request in, curves out, buffers moved. Nothing leaves the browser. */
 const answer = ({ id, set, temperatureK, waitingTimePs }: PreviewRequest): PreviewAnswer => {
   try {
-    const estimate = estimateRun(set)
-    return { id, ok: true, estimate, preview: computePreview(set, temperatureK, waitingTimePs) }
+    const began = performance.now()
+    const preview = computePreview(set, temperatureK, waitingTimePs)
+    const elapsedMs = performance.now() - began
+    return { id, ok: true, preview, elapsedMs, estimate: estimateRun(set) }
   } catch (error) {
     return { id, ok: false, message: error instanceof Error ? error.message : String(error) }
   }

@@ -3,7 +3,7 @@
  * Both give the same numbers to rounding, 1e-14 of the maximum (tests/engine/map.spec.ts).
  */
 import { edgeCorrection, largestModulus } from './edge-correction'
-import { kernelAbsorptiveMap } from './kernel/absorptive-map'
+import { kernelAbsorptiveMap, LARGEST_PADDED } from './kernel/absorptive-map'
 import { kernelMap } from './kernel/complex-map'
 import { loadKernel } from './kernel/load-kernel'
 import { plainMap, plainMaps, type MapBins } from './map'
@@ -16,14 +16,16 @@ export const signalMap = (tables: SignalTables, bins: MapBins, stop?: () => bool
   return kernel && tables.factors ? kernelMap(kernel, tables, bins, stop) : plainMap(tables, bins, stop)
 }
 
-/** Re(S_R + S_N) alone, at a quarter of the transforms of the two complex maps. */
-export const absorptiveMap = (tables: MapTables, bins: MapBins): Float64Array => {
+/** Re(S_R + S_N) alone, at a quarter of the transforms of the two complex maps; written to `into` when that is given. */
+export const absorptiveMap = (tables: MapTables, bins: MapBins, into?: Float64Array): Float64Array => {
   const kernel = loadKernel()
-  if (kernel && tables.rephasing.factors && tables.nonRephasing.factors) {
-    return kernelAbsorptiveMap(kernel, tables, bins)
+  if (kernel && bins.padded <= LARGEST_PADDED && tables.rephasing.factors && tables.nonRephasing.factors) {
+    return kernelAbsorptiveMap(kernel, tables, bins, into)
   }
   const { rephasing, nonRephasing } = plainMaps(tables, bins)
-  return rephasing.re.map((value, i) => value + nonRephasing.re[i]!)
+  const out = into ?? new Float64Array(rephasing.re.length)
+  for (let i = 0; i < out.length; i++) out[i] = rephasing.re[i]! + nonRephasing.re[i]!
+  return out
 }
 
 export interface CorrectedMap extends ComplexSeries {

@@ -15,68 +15,77 @@ import { KernelHeap, ROW_BYTES } from './kernel-memory'
 import type { KernelExports } from './load-kernel'
 
 const BLOCK_PAD = 3 * ROW_BYTES
-/** Extra entries so that four columns can be read beyond the last one. */
-const SPARE = 8
+/** Entries between the tables of the bank, as in map-kernel.as; the longest has 2 x 4096 + 16. */
+const BANK = 65792 / 8
+const TABLES = 17
+/** Longest padded length that the bank holds. */
+export const LARGEST_PADDED = 4096
 
-/** Values of `source` at index(i), 0 outside it, times `factor`, for i < length. */
-const arranged = (
-  heap: KernelHeap,
-  source: Float64Array | undefined,
-  length: number,
-  index: (i: number) => number,
-  factor: number,
-): number => {
-  const at = heap.doubles(length)
-  const view = heap.view(at, length)
-  for (let i = 0; i < length; i++) {
-    const j = index(i)
-    view[i] = source === undefined ? factor : j >= 0 && j < source.length ? factor * source[j]! : 0
-  }
-  return at
+/** Copies scale x source in ascending order to target[to ..], and no further than `length`. */
+const forward = (target: Float64Array, to: number, source: Float64Array, scale: number, length: number): void => {
+  const count = Math.min(source.length, length - to)
+  for (let j = Math.max(0, -to); j < count; j++) target[to + j] = scale * source[j]!
 }
 
-/** The 26 offsets that `fillHermitian` reads. */
-const hermitianTables = (heap: KernelHeap, { rephasing, nonRephasing }: MapTables, padded: number): number => {
-  const n = rephasing.samples
+/** The same in descending order: target[to - j] = scale x source[j]. */
+const backward = (target: Float64Array, to: number, source: Float64Array, scale: number, length: number): void => {
+  const count = Math.min(source.length, to + 1)
+  for (let j = Math.max(0, to - length + 1); j < count; j++) target[to - j] = scale * source[j]!
+}
+
+interface Bank {
+  bank: number
+  third: number
+}
+
+/**
+ * The tables that `fillHermitian` reads. Terms: NR(a, b), NR*(-a, -b), R(-a, b), R*(a, -b). On the torus -a is padded - a; entry 0
+ * of a mirrored table stays 0, because those points are written by `hermitianEdge`.
+ */
+const hermitianTables = (heap: KernelHeap, { rephasing, nonRephasing }: MapTables, padded: number): Bank => {
+  const bank = heap.doubles(TABLES * BANK)
+  const third = heap.doubles(8 * padded)
+  heap.view(bank, TABLES * BANK).fill(0)
+  const table = (k: number) => heap.view(bank + 8 * k * BANK, BANK)
   const r = rephasing.factors!
   const s = nonRephasing.factors!
-  const side = padded + SPARE
-  const both = 2 * padded + SPARE
-  const same = (i: number) => i
-  // Column 0 mirrors onto itself; its entries are written by `writeEdges`.
-  const mirrored = (i: number) => (i === 0 ? -1 : padded - i)
-  const complex = (series: ComplexSeries, length: number, index: (i: number) => number, scale: number, sign: number) =>
-    [arranged(heap, series.re, length, index, scale), arranged(heap, series.im, length, index, sign * scale)] as const
-  const sums = (i: number) => i
-  const mirroredSums = (i: number) => 2 * padded - i
-  // H of the last two terms runs with t1 - t3: entry j stands for t1 - t3 = j - (padded - 1), and j - padded.
-  const backward = (j: number) => 2 * padded - 1 - j
-  const ensemble = (i: number) => (Math.abs(i - padded) < n ? i - padded + n - 1 : -1)
-  const p = [
-    complex(s.p, side, same, 0.5, 1),
-    complex(s.p, side, mirrored, 0.5, -1),
-    complex(r.p, side, mirrored, 0.5, 1),
-    complex(r.p, side, same, 0.5, -1),
-  ]
-  const q = [
-    complex(s.q, side, same, 1, 1),
-    complex(s.q, side, mirrored, 1, -1),
-    complex(r.q, side, same, 1, 1),
-    complex(r.q, side, mirrored, 1, -1),
-  ]
-  const h = [
-    complex(s.h, both, sums, 1, 1),
-    complex(s.h, both, mirroredSums, 1, -1),
-    complex(r.h, both, backward, 1, 1),
-    complex(r.h, both, same, 1, -1),
-  ]
-  const t = arranged(heap, rephasing.toeplitz, both, ensemble, 1)
-  const offsets = [...p.flat(), ...q.flat(), ...h.flat(), t, t]
-  const shift = [padded - 1, padded - 1, padded, padded]
-  shift.forEach((entries, k) => {
-    offsets[20 + k]! += 8 * entries
-  })
-  return heap.putIntegers(offsets)
+  const both = 2 * padded + 4
+  forward(table(0), 0, s.h.re, 1, both)
+  forward(table(1), 0, s.h.im, 1, both)
+  backward(table(2), 2 * padded, s.h.re, 1, both)
+  backward(table(3), 2 * padded, s.h.im, -1, both)
+  if (rephasing.toeplitz) forward(table(4), padded - rephasing.samples + 1, rephasing.toeplitz, 1, both)
+  else table(4).fill(1)
+  // At a - b + padded: H(padded - a + b) of R(-a, b), and H*(a - b + padded) of R*(a, -b).
+  backward(table(5), 2 * padded, r.h.re, 1, both)
+  backward(table(6), 2 * padded, r.h.im, 1, both)
+  forward(table(7), 0, r.h.re, 1, both)
+  forward(table(8), 0, r.h.im, -1, both)
+  const side = padded + 4
+  const tail = (part: Float64Array) => part.subarray(1)
+  forward(table(9), 0, s.p.re, 0.5, side)
+  forward(table(10), 0, s.p.im, 0.5, side)
+  backward(table(11), padded - 1, tail(s.p.re), 0.5, side)
+  backward(table(12), padded - 1, tail(s.p.im), -0.5, side)
+  backward(table(13), padded - 1, tail(r.p.re), 0.5, side)
+  backward(table(14), padded - 1, tail(r.p.im), 0.5, side)
+  forward(table(15), 0, r.p.re, 0.5, side)
+  forward(table(16), 0, r.p.im, -0.5, side)
+  const numbers = heap.view(third, 8 * padded)
+  numbers.fill(0)
+  for (let b = 0; b < rephasing.samples; b++) {
+    numbers[8 * b] = s.q.re[b]!
+    numbers[8 * b + 1] = s.q.im[b]!
+    numbers[8 * b + 4] = r.q.re[b]!
+    numbers[8 * b + 5] = r.q.im[b]!
+    if (b === 0) continue
+    const mirrored = 8 * (padded - b)
+    numbers[mirrored + 2] = s.q.re[b]!
+    numbers[mirrored + 3] = -s.q.im[b]!
+    numbers[mirrored + 6] = r.q.re[b]!
+    numbers[mirrored + 7] = -r.q.im[b]!
+  }
+  return { bank, third }
 }
 
 /** Signal at t1 = 0 (all t3) or at t3 = 0 (all t1). */
@@ -120,9 +129,16 @@ const hermitianEdge = (
   return out
 }
 
-export const kernelAbsorptiveMap = (kernel: KernelExports, tables: MapTables, bins: MapBins): Float64Array => {
+export const kernelAbsorptiveMap = (
+  kernel: KernelExports,
+  tables: MapTables,
+  bins: MapBins,
+  into?: Float64Array,
+): Float64Array => {
   const { padded } = bins
   assertFits(tables.rephasing.samples, bins)
+  if (padded > LARGEST_PADDED)
+    throw new RangeError(`expected a padded length of at most ${LARGEST_PADDED}; found ${padded}`)
   const count = 2 * bins.halfBins
   const heap = new KernelHeap(kernel)
   const plan = heap.plan(padded)
@@ -133,7 +149,7 @@ export const kernelAbsorptiveMap = (kernel: KernelExports, tables: MapTables, bi
     Int32Array.from({ length: 4 * groups }, (_, i) => places[Math.min(i, count - 1)]!),
   )
   const firstPlaces = heap.putIntegers(places)
-  const offsets = hermitianTables(heap, tables, padded)
+  const { bank, third } = hermitianTables(heap, tables, padded)
   const columns = 4 * Math.ceil((padded / 2 + 1) / 4)
   const buffer = heap.rows(padded)
   const blockBytes = ROW_BYTES * columns + BLOCK_PAD
@@ -146,7 +162,7 @@ export const kernelAbsorptiveMap = (kernel: KernelExports, tables: MapTables, bi
   const along1 = hermitianEdge(edgeOf(nonRephasing, false), edgeOf(rephasing, false), padded, false)
   const rows = heap.view(buffer, 8 * padded)
   for (let first = 0; first < columns; first += 4) {
-    kernel.fillHermitian(buffer, plan.order, padded, first, offsets)
+    kernel.fillHermitian(buffer, plan.order, padded, first, bank, third)
     for (let lane = 0; lane < 4 && first + lane < padded; lane++) {
       rows[lane] = along1.re[first + lane]!
       rows[lane + 4] = along1.im[first + lane]!
@@ -166,5 +182,5 @@ export const kernelAbsorptiveMap = (kernel: KernelExports, tables: MapTables, bi
     kernel.transform(buffer, padded, plan.twiddles)
     kernel.scatter(buffer, firstPlaces, count, out, out + 32, 8 * pitch, 4 * group)
   }
-  return unpadded(heap.view(out, count * pitch), count, pitch)
+  return unpadded(heap.view(out, count * pitch), count, pitch, into)
 }

@@ -75,8 +75,13 @@ export const assertFits = (samples: number, { padded, halfBins }: MapBins): void
   )
 }
 
-export const unpadded = (plane: Float64Array, count: number, pitch: number): Float64Array => {
-  const out = new Float64Array(count * count)
-  for (let i = 0; i < count; i++) out.set(plane.subarray(i * pitch, i * pitch + count), i * count)
-  return out
+/** Rows of a plane without their padding, into a given array or a new one. */
+export const unpadded = (
+  plane: Float64Array,
+  count: number,
+  pitch: number,
+  into: Float64Array = new Float64Array(count * count),
+): Float64Array => {
+  for (let i = 0; i < count; i++) into.set(plane.subarray(i * pitch, i * pitch + count), i * count)
+  return into
 }

@@ -29,7 +29,7 @@ export interface KernelExports {
     hi: number,
     toeplitz: number,
   ) => void
-  fillHermitian: (buffer: number, order: number, length: number, first: number, tables: number) => void
+  fillHermitian: (buffer: number, order: number, length: number, first: number, bank: number, third: number) => void
   keepBins: (buffer: number, middle: number, blockBytes: number, first: number, places: number, groups: number) => void
   gather: (buffer: number, order: number, block: number, count: number) => void
   gatherHermitian: (buffer: number, order: number, a: number, b: number, length: number) => void

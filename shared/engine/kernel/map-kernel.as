@@ -177,101 +177,78 @@ export function fillProduct(
   }
 }
 
+/** Bytes between the tables of the bank: beyond the longest one (2 x 4096 + 16 entries), off the power of two. */
+const BANK: usize = 65792
+
 /**
  * Hermitian part of z(t1, t3) = NR(t1, t3) + R(-t1, t3) on the torus of `length`, columns t1 = first .. first + 3:
  *   h = [NR(a, b) + NR*(-a, -b) + R(-a, b) + R*(a, -b)] / 2.
- * `tables` points to 26 offsets: P (8), Q (8), H (8), T (2), each pair the real and imaginary part of one of the four terms, all
- * arranged so that four columns are contiguous: H of terms 0 and 1 at a + b, of terms 2 and 3 at a - b, T at a + b.
+ * `bank` holds tables BANK bytes apart: at a + b the real and imaginary H of the first two terms (0 to 3) and the ensemble (4); at
+ * a - b + length those of the last two (5 to 8); at a the P of the four terms (9 to 16). `third` holds eight numbers for
+ * every b, the Q of the four terms. Constant distances leave one pointer for each of them.
  */
-export function fillHermitian(buffer: usize, order: usize, length: usize, first: usize, tables: usize): void {
-  const column = 8 * first
+export function fillHermitian(
+  buffer: usize, order: usize, length: usize, first: usize, bank: usize, third: usize,
+): void {
   for (let v: usize = 0; v < HALF; v += VECTOR) {
-    const p0 = v128.load(<usize>load<u32>(tables) + column + v)
-    const p1 = v128.load(<usize>load<u32>(tables + 4) + column + v)
-    const p2 = v128.load(<usize>load<u32>(tables + 8) + column + v)
-    const p3 = v128.load(<usize>load<u32>(tables + 12) + column + v)
-    const p4 = v128.load(<usize>load<u32>(tables + 16) + column + v)
-    const p5 = v128.load(<usize>load<u32>(tables + 20) + column + v)
-    const p6 = v128.load(<usize>load<u32>(tables + 24) + column + v)
-    const p7 = v128.load(<usize>load<u32>(tables + 28) + column + v)
-    let q0 = <usize>load<u32>(tables + 32)
-    let q1 = <usize>load<u32>(tables + 36)
-    let q2 = <usize>load<u32>(tables + 40)
-    let q3 = <usize>load<u32>(tables + 44)
-    let q4 = <usize>load<u32>(tables + 48)
-    let q5 = <usize>load<u32>(tables + 52)
-    let q6 = <usize>load<u32>(tables + 56)
-    let q7 = <usize>load<u32>(tables + 60)
-    let h0 = <usize>load<u32>(tables + 64) + column + v
-    let h1 = <usize>load<u32>(tables + 68) + column + v
-    let h2 = <usize>load<u32>(tables + 72) + column + v
-    let h3 = <usize>load<u32>(tables + 76) + column + v
-    let h4 = <usize>load<u32>(tables + 80) + column + v
-    let h5 = <usize>load<u32>(tables + 84) + column + v
-    let h6 = <usize>load<u32>(tables + 88) + column + v
-    let h7 = <usize>load<u32>(tables + 92) + column + v
-    let t0 = <usize>load<u32>(tables + 96) + column + v
-    let t1 = <usize>load<u32>(tables + 100) + column + v
-    for (let k: usize = 0; k < length; k++) {
-      const row = buffer + ROW * <usize>load<u32>(order + 4 * k) + v
-      let xr = v128.load(h0)
-      let xi = v128.load(h1)
-      let br = splat(q0)
-      let bi = splat(q1)
+    const column = bank + 8 * first + v
+    const p0 = v128.load(column, 9 * BANK)
+    const p1 = v128.load(column, 10 * BANK)
+    const p2 = v128.load(column, 11 * BANK)
+    const p3 = v128.load(column, 12 * BANK)
+    const p4 = v128.load(column, 13 * BANK)
+    const p5 = v128.load(column, 14 * BANK)
+    const p6 = v128.load(column, 15 * BANK)
+    const p7 = v128.load(column, 16 * BANK)
+    let forward = column
+    let backward = column + 8 * length
+    let q = third
+    const last = order + 4 * length
+    for (let at = order; at < last; at += 4) {
+      const row = buffer + ROW * <usize>load<u32>(at) + v
+      let xr = v128.load(forward)
+      let xi = v128.load(forward, BANK)
+      let br = v128.load64_splat(q)
+      let bi = v128.load64_splat(q, 8)
       let ur = sub(mul(xr, br), mul(xi, bi))
       let ui = add(mul(xr, bi), mul(xi, br))
       let sr = sub(mul(ur, p0), mul(ui, p1))
       let si = add(mul(ur, p1), mul(ui, p0))
 
-      xr = v128.load(h2)
-      xi = v128.load(h3)
-      br = splat(q2)
-      bi = splat(q3)
+      xr = v128.load(forward, 2 * BANK)
+      xi = v128.load(forward, 3 * BANK)
+      br = v128.load64_splat(q, 16)
+      bi = v128.load64_splat(q, 24)
       ur = sub(mul(xr, br), mul(xi, bi))
       ui = add(mul(xr, bi), mul(xi, br))
       sr = add(sr, sub(mul(ur, p2), mul(ui, p3)))
       si = add(si, add(mul(ur, p3), mul(ui, p2)))
 
-      let t = v128.load(t0)
-      xr = mul(v128.load(h4), t)
-      xi = mul(v128.load(h5), t)
-      br = splat(q4)
-      bi = splat(q5)
+      // The ensemble multiplies the sum of both rephasing terms.
+      xr = v128.load(backward, 5 * BANK)
+      xi = v128.load(backward, 6 * BANK)
+      br = v128.load64_splat(q, 32)
+      bi = v128.load64_splat(q, 40)
       ur = sub(mul(xr, br), mul(xi, bi))
       ui = add(mul(xr, bi), mul(xi, br))
-      sr = add(sr, sub(mul(ur, p4), mul(ui, p5)))
-      si = add(si, add(mul(ur, p5), mul(ui, p4)))
+      let tr = sub(mul(ur, p4), mul(ui, p5))
+      let ti = add(mul(ur, p5), mul(ui, p4))
 
-      t = v128.load(t1)
-      xr = mul(v128.load(h6), t)
-      xi = mul(v128.load(h7), t)
-      br = splat(q6)
-      bi = splat(q7)
+      xr = v128.load(backward, 7 * BANK)
+      xi = v128.load(backward, 8 * BANK)
+      br = v128.load64_splat(q, 48)
+      bi = v128.load64_splat(q, 56)
       ur = sub(mul(xr, br), mul(xi, bi))
       ui = add(mul(xr, bi), mul(xi, br))
-      sr = add(sr, sub(mul(ur, p6), mul(ui, p7)))
-      si = add(si, add(mul(ur, p7), mul(ui, p6)))
+      tr = add(tr, sub(mul(ur, p6), mul(ui, p7)))
+      ti = add(ti, add(mul(ur, p7), mul(ui, p6)))
 
-      v128.store(row, sr)
-      v128.store(row + HALF, si)
-      q0 += 8
-      q1 += 8
-      q2 += 8
-      q3 += 8
-      q4 += 8
-      q5 += 8
-      q6 += 8
-      q7 += 8
-      h0 += 8
-      h1 += 8
-      h2 += 8
-      h3 += 8
-      h4 -= 8
-      h5 -= 8
-      h6 -= 8
-      h7 -= 8
-      t0 += 8
-      t1 += 8
+      const t = v128.load(forward, 4 * BANK)
+      v128.store(row, add(sr, mul(tr, t)))
+      v128.store(row + HALF, add(si, mul(ti, t)))
+      forward += 8
+      backward -= 8
+      q += 64
     }
   }
 }

@@ -5,7 +5,7 @@
  */
 import { readFileSync } from 'node:fs'
 import { ENGINE_VERSION } from '../../shared/engine/engine-version'
-import { evaluateRequests, parseRequests } from '../../shared/engine/evaluate/evaluate'
+import { evaluateRequests, parseRequests } from '../../shared/evaluate/evaluate'
 import { InputProblem } from './input-problem'
 import { sphereCommand } from './modes'
 

@@ -1,5 +1,5 @@
 import { describe, expect, it } from 'vitest'
-import { engineQuantities, evaluateRequests, parseRequests } from '../../shared/engine/evaluate/evaluate'
+import { engineQuantities, evaluateRequests, parseRequests } from '../../shared/evaluate/evaluate'
 import independent from './reference/independent-values.json'
 import simple from './reference/simple-values.json'
 import spectra from './reference/spectra.json'

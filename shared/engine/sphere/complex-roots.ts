@@ -3,6 +3,7 @@
  *
  * The winding number of f along the border counts the zeros inside (argument principle); rectangles are halved until
  * each holds one, which the secant method then polishes. Nothing inside can be missed, unlike with a set of starts.
+ * Source: argument principle, as in Delves & Lyness, Math. Comput. 21, 543 (1967) (from memory).
  */
 import Complex from 'complex.js'
 

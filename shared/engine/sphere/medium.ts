@@ -1,4 +1,4 @@
-/** An isotropic elastic medium in SI units. */
+/** An isotropic elastic medium in SI units. Source of the relations: Landau & Lifshitz, Theory of Elasticity (1986), section 22. */
 export interface Medium {
   densityKgPerM3: number
   longitudinalVelocityMPerS: number

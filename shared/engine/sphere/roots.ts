@@ -1,5 +1,6 @@
 /**
- * The first `count` roots of a smooth real function above `from`, in order.
+ * The first `count` roots of a smooth real function above `from`, in order. Derived here from bisection and the golden
+ * section; no formula of its own.
  *
  * Scanned in steps; a step whose ends have equal sign is looked at again where |f| has a minimum inside, so that a close
  * pair of roots is not passed over. Each root is bisected to the last bit. Stops with an error after 20 000 steps: a

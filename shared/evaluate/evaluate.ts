@@ -2,12 +2,7 @@
  * Evaluates requests for physical quantities, one after another: the engine's front door for scripts. Framework-free; the
  * command line only reads the file and prints the answers.
  */
-import {
-  EngineRequestSchema,
-  type EngineQuantity,
-  type EngineRequest,
-  type RequestOf,
-} from '../../schemas/engine-request'
+import { EngineRequestSchema, type EngineQuantity, type EngineRequest, type RequestOf } from '../schemas/engine-request'
 import { EngineRefusal, type Answer } from './answer'
 import {
   answerKubo,

@@ -1,12 +1,12 @@
 /** Answers of the command line about one-dimensional quantities. Names and shapes of the values are those of the requests' documentation. */
-import type { RequestOf } from '../../schemas/engine-request'
-import { huangRhysLineWeights, moments, reorganizationEnergyMeV, zeroPhononWeight } from '../bath-integrals'
-import { lineBroadeningAt } from '../line-broadening'
-import { linearSampled } from '../linear'
-import { absorptionAt, absorptionFwhm, emissionAt } from '../linear-at'
-import { spectralDensity } from '../spectral-density'
-import { thirdOrderPathways } from '../third-order'
-import type { ComplexSeries, LineModel } from '../types'
+import type { RequestOf } from '../schemas/engine-request'
+import { huangRhysLineWeights, moments, reorganizationEnergyMeV, zeroPhononWeight } from '../engine/bath-integrals'
+import { lineBroadeningAt } from '../engine/line-broadening'
+import { linearSampled } from '../engine/linear'
+import { absorptionAt, absorptionFwhm, emissionAt } from '../engine/linear-at'
+import { spectralDensity } from '../engine/spectral-density'
+import { thirdOrderPathways } from '../engine/third-order'
+import type { ComplexSeries, LineModel } from '../engine/types'
 import { EngineRefusal, type Answer } from './answer'
 
 type LineParameters = RequestOf<'absorption'>['parameters']

@@ -1,9 +1,9 @@
 /** Answers of the command line about spheres, orientations and simple line widths. */
-import type { RequestOf } from '../../schemas/engine-request'
-import { isotropicFactor, linearPolarizations, type Vector } from '../fine-structure/orientation'
-import { kuboFwhm, lorentzianFwhm, voigtFwhm } from '../simple-widths'
-import { spheroidalEigenvalues, torsionalEigenvalues } from '../sphere/free-sphere'
-import { sphereModes } from '../sphere/sphere-modes'
+import type { RequestOf } from '../schemas/engine-request'
+import { isotropicFactor, linearPolarizations, type Vector } from '../engine/fine-structure/orientation'
+import { kuboFwhm, lorentzianFwhm, voigtFwhm } from '../engine/simple-widths'
+import { spheroidalEigenvalues, torsionalEigenvalues } from '../engine/sphere/free-sphere'
+import { sphereModes } from '../engine/sphere/sphere-modes'
 import type { Answer } from './answer'
 
 const UNIT = '1, x = w R / v_T; n counts the non-zero roots from 0'

@@ -102,18 +102,21 @@ export interface SpectralMoments {
 }
 
 export const moments = (phonons: Phonons, temperatureK: number, ensembleFwhmMeV = 0): SpectralMoments => {
-  const lambda = reorganizationEnergyMeV(phonons)
+  const th = thermalFrequencyOf(temperatureK)
   const sigma = ensembleFwhmMeV / GAUSSIAN_FWHM_PER_SIGMA
+  let lambda = 0
   let variance: number | null = sigma * sigma
   let third: number | null = 0
   for (const term of phonons.bath) {
-    const integrals = densityIntegrals(term, thermalFrequencyOf(temperatureK))
+    const integrals = densityIntegrals(term, th)
+    lambda += HBAR_MEV_PS * integrals.reorganization
     variance =
       variance === null || integrals.variance === null ? null : variance + HBAR_MEV_PS ** 2 * integrals.variance
     third = third === null || integrals.third === null ? null : third + HBAR_MEV_PS ** 3 * integrals.third
   }
   for (const { frequency, huangRhys, thermalHuangRhys } of resolveModes(phonons.modes, temperatureK)) {
     const energy = HBAR_MEV_PS * frequency
+    lambda += huangRhys * energy
     if (variance !== null) variance += thermalHuangRhys * energy ** 2
     if (third !== null) third += huangRhys * energy ** 3
   }

@@ -6,6 +6,7 @@ import { scaledE1, scaledEi } from '../../shared/engine/exponential-integral'
 import { dawson, faddeeva } from '../../shared/engine/faddeeva'
 import { gamma } from '../../shared/engine/gamma'
 import { sphericalBessel } from '../../shared/engine/spherical-bessel'
+import reference from './reference/line-shape-values.json'
 import fixture from './reference/special-functions.json'
 
 type Pair = [number, number]
@@ -74,9 +75,16 @@ describe('special functions against mpmath', () => {
         errors.every((error) => error <= bound),
         `${JSON.stringify(own[worst])}: ${errors[worst]}`,
       ).toBe(true)
-      if (process.env.PRINT_ERRORS) console.log(name, errors[worst])
     })
   }
+
+  it('w(z) equals the reference values (twelve digits)', () => {
+    expect(reference.faddeeva_w).toHaveLength(5)
+    for (const [text, value] of reference.faddeeva_w as [string, Pair][]) {
+      const [, re, im = '0'] = /^\(?([\d.e-]+)(?:\+([\d.e-]+)j)?\)?$/.exec(text)!
+      expect(errorOf(functions.faddeeva!([Number(re), Number(im)], 0), value, 0)).toBeLessThan(1e-11)
+    }
+  })
 
   it('never overflows where the factors of w(z) would', () => {
     const out = new Float64Array(2)

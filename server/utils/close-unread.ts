@@ -1,17 +1,24 @@
 import type { H3Event } from 'h3'
 import { hasBody } from './read-body'
 
-const graceMs = 500
+const graceMs = 1000
 
 /**
- * An answer given before the whole body was read ends the connection: the rest of the body is neither stored nor
- * waited for. A short grace lets the client read the answer before the socket goes.
+ * An answer given before the whole body was read ends the connection: the rest of the body is neither stored nor waited
+ * for. Closing at once would reset the connection, and the client, still sending, would lose the answer with it; so our
+ * half is closed first and the rest stays unread for a moment.
  */
 export const closeUnreadRequest = (event: H3Event): void => {
   const { req, res } = event.node
-  if (!hasBody(event) || req.complete) return
+  const { socket } = res
+  if (!socket || !hasBody(event) || req.complete) return
   if (!res.headersSent) res.setHeader('connection', 'close')
-  const socket = res.socket
   req.pause()
-  res.once('finish', () => setTimeout(() => socket?.destroy(), graceMs).unref())
+  res.prependOnceListener('finish', () => {
+    // What Node calls on the last answer of a connection.
+    socket.destroySoon = () => {
+      socket.end()
+      setTimeout(() => socket.destroy(), graceMs).unref()
+    }
+  })
 }

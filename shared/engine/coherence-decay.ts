@@ -4,7 +4,7 @@
  * Along one time axis the signal is bounded by exp(-D(t)),
  *   linear:  D = Re g0_bath(t) + gam t + sig^2 t^2 / 2
  *   echo t1 = t3 = t at waiting time t2:  D = 2 Re g(t) + 2 Re g(t + t2) - Re g(2t + t2) - Re g(t2) + 2 gam t
- * (PHYSICS: third-order pathways, both bounds of |R2| and |R3| at t1 = t3). Discrete modes recur, so they never shorten a
+ * (the bounds of |R2| and |R3| of `third-order.ts` at t1 = t3; source there). Discrete modes recur, so they never shorten a
  * window and are left out. The window ends where Int_t^inf exp(-D) falls below the wanted fraction of the whole
  * integral, which is the error that cutting there leaves at the maximum of a spectrum.
  *

@@ -13,6 +13,8 @@
  * taken out of the tables, because thermal baths would drive them beyond the range of a double. Where a logarithm still passes
  * 300 the product is not formed from tables: `exact` is false and the signal is built point by point from the sums.
  *
+ * Source of the pathways: Mukamel (1995), ch. 8, written out in `third-order.ts`; regrouping of the exponents in place.
+ *
  * P carries exp(-gam t1), dt and the half weight of the first sample, Q the same of t3 and exp(-t2/T1).
  * Cost: about 12 exponentials with sine and cosine a sample. Spec: tests/engine/map-tables.spec.ts.
  */

@@ -6,7 +6,7 @@
  *   cubic through the four points around the crossing, never snapped to the grid.
  * - Moments: trapezoid sums over the range of the curve; the second and third are central.
  *
- * Energies in meV, ascending, any spacing. What a curve does not define is null with a reason.
+ * These are the definitions; nothing is fitted. Energies in meV, ascending, any spacing. What a curve does not define is null with a reason.
  * Spec: tests/engine/measured.spec.ts.
  */
 import type { MeasuredQuantity } from '../schemas/run'

@@ -10,7 +10,7 @@
  * One-dimensional transforms of `projection.ts`; with x in steps of two energy steps the points are those of the full map,
  * and the numbers agree with it to rounding (tests/engine/slices.spec.ts).
  *
- * Strongly inhomogeneous reduction of the rephasing cross-diagonal (PHYSICS: one integral over t1 = t3 = t),
+ * Strongly inhomogeneous reduction of the rephasing cross-diagonal (one integral over t1 = t3 = t),
  *   S_R(x) = (sqrt(2 pi)/sig) Int dt exp(i x t/hbar) R(t, t2, t) - R(0, t2, 0)/sig^2:
  * its error is estimated from the curvature of R across t1 = t3, and it is taken when the estimate is below 1e-6 of the
  * maximum; the band otherwise. The answer says which, and the estimate.

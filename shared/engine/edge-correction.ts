@@ -11,7 +11,7 @@
  * differences. Rephasing has exp(-i w1 t1): c0 and c2 change sign there.
  *
  * Source: Poisson summation; Davis & Rabinowitz, Methods of Numerical Integration, 2nd ed. (1984), 2.9. Brings the sampled
- * map from second order in dt to fourth (tests/engine/edge-correction.spec.ts).
+ * map from second order in dt to fourth (tests/engine/map.spec.ts).
  */
 import { transformBatch } from './kernel/batch-transform'
 import type { MapBins } from './map'

@@ -47,7 +47,6 @@ export const foldedWings = (offsetMeV: number, spanMeV: number, halfWidthMeV: nu
   const unit = Math.PI / spanMeV
   wingTerms((offsetMeV - moments.mean) * unit, terms)
   const second = moments.variance - (halfWidthMeV * halfWidthMeV) / 3
-  const sum =
-    terms[0]! + ((second * unit * unit) / 2) * terms[1]! - ((moments.third * unit ** 3) / 6) * terms[2]!
+  const sum = terms[0]! + ((second * unit * unit) / 2) * terms[1]! - ((moments.third * unit ** 3) / 6) * terms[2]!
   return (halfWidthMeV / Math.PI) * unit * unit * sum
 }

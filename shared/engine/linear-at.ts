@@ -11,7 +11,7 @@
  *
  * Source: Kubo (1962); Mukamel (1995), ch. 8. Gauss-Legendre panels of 16 nodes on which no phase turns by more than ten
  * radians; the first one is halved towards t = 0. The window leaves 1e-12 of the signal. Cost: nodes x energies; the model
- * must allow a linear spectrum (chooseLinearGrid), else RangeError. Spec: tests/engine/linear-reference.spec.ts.
+ * must allow a linear spectrum (chooseLinearGrid), else RangeError. Spec: tests/engine/linear.spec.ts.
  */
 import { decayWindow, ensembleSigma, homogeneousRate, linearDecay, withEnsemble } from './coherence-decay'
 import { HBAR_MEV_PS } from './constants'

@@ -9,7 +9,7 @@
  *
  * Definitions and sources: `map.ts`, `edge-correction.ts`. `mapAt` sums on a grid whose span holds all but 1e-9 of the sidebands
  * and whose window leaves 1e-9 of the signal, with the end correction (fourth order in dt), and halves the step until two
- * answers agree. Cost: samples^2 for each distinct E3. Spec: tests/engine/map-reference.spec.ts.
+ * answers agree. Cost: samples^2 for each distinct E3. Spec: tests/engine/map.spec.ts.
  */
 import { decayWindow, echoDecay, ensembleSigma, homogeneousRate, linearDecay, withEnsemble } from './coherence-decay'
 import { HBAR_MEV_PS, PLANCK_MEV_PS } from './constants'

@@ -16,7 +16,7 @@
  * Source of the pathways: Mukamel (1995), ch. 8, written out in `third-order.ts`; regrouping of the exponents in place.
  *
  * P carries exp(-gam t1), dt and the half weight of the first sample, Q the same of t3 and exp(-t2/T1).
- * Cost: about 12 exponentials with sine and cosine a sample. Spec: tests/engine/map-tables.spec.ts.
+ * Cost: about 12 exponentials with sine and cosine a sample. Spec: tests/engine/map.spec.ts.
  */
 import { ensembleSigma, homogeneousRate } from './coherence-decay'
 import type { ComplexSeries, LineModel } from './types'

@@ -10,7 +10,7 @@
  * mirror image about E0.
  *
  * The integral runs on a logarithmic trapezoid of 12 points per factor e, exact to better than 1 % of K, which moves the
- * reach by less. Cost: about 200 exponentials per bath term and s. Spec: tests/engine/sideband-reach.spec.ts.
+ * reach by less. Cost: about 200 exponentials per bath term and s. Spec: tests/engine/grid.spec.ts.
  */
 import { toContinuum } from './bath/registry'
 import { GAUSSIAN_FWHM_PER_SIGMA, HBAR_MEV_PS, thermalFrequencyOf } from './constants'

@@ -34,28 +34,27 @@ beforeAll(async () => {
 afterAll(() => browser.close())
 
 describe.each(['light', 'dark'] as const)('in the %s theme', (colorScheme) => {
-  const views: Record<string, WatchedPage> = {}
+  let guestView: WatchedPage
+  let wide: WatchedPage
+  let narrow: WatchedPage
   let place: Place
 
   beforeAll(async () => {
     // A page that shows an error answers with its status; the browser notes that, and it is meant.
     const common = { baseUrl: inject('baseUrl'), colorScheme, expectedStatus: [404] }
-    const signedIn = await openPage(browser, common)
-    await signIn(signedIn.page, inject('demoEmail'), inject('demoPassword'))
-    place = await findPlace(signedIn.page)
-    Object.assign(views, {
-      guest: await openPage(browser, common),
-      wide: signedIn,
-      narrow: await openPage(browser, { ...common, width: 390, height: 844 }),
-    })
-    await signIn(views.narrow.page, inject('demoEmail'), inject('demoPassword'))
+    guestView = await openPage(browser, common)
+    wide = await openPage(browser, common)
+    await signIn(wide.page, inject('demoEmail'), inject('demoPassword'))
+    place = await findPlace(wide.page)
+    narrow = await openPage(browser, { ...common, width: 390, height: 844 })
+    await signIn(narrow.page, inject('demoEmail'), inject('demoPassword'))
   })
   afterAll(async () => {
-    for (const view of Object.values(views)) await view.close()
+    for (const view of [guestView, wide, narrow]) await view.close()
   })
 
   it.each(pages)('$name has no barrier that axe-core finds', async ({ path, guest, ready }) => {
-    const view = guest ? views.guest : views.wide
+    const view = guest ? guestView : wide
     await view.page.goto(path(place))
     await ready(view.page)
     expect(await findViolations(view.page)).toEqual([])
@@ -63,7 +62,7 @@ describe.each(['light', 'dark'] as const)('in the %s theme', (colorScheme) => {
   })
 
   it.each(pages.filter(({ guest }) => !guest))('$name can be read on a phone', async ({ path, ready }) => {
-    const { page, complaints } = views.narrow
+    const { page, complaints } = narrow
     await page.setViewportSize({ width: 390, height: 844 })
     await page.goto(path(place))
     await ready(page)

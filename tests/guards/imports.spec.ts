@@ -54,7 +54,7 @@ describe('shared/', () => {
   })
 
   it('keeps the engine to itself, to what is shared by all, and to the types of schemas and errors', () => {
-    /** Numeric packages: complex.js is the arithmetic of the oracle, mathjs parses typed formulas. */
+    /** Numeric packages: complex.js is the arithmetic where clarity counts, mathjs parses typed formulas. */
     const numeric: Record<string, RegExp> = {
       'complex.js': /^shared\/engine\/(oracle|self-check|complex-functions|sphere\/.*)\.ts$/,
       mathjs: /^shared\/engine\/bath\/(formula|expression)\.ts$/,

@@ -1,4 +1,4 @@
-import { appendFileSync, mkdtempSync, rmSync, writeFileSync } from 'node:fs'
+import { appendFileSync, mkdirSync, mkdtempSync, rmSync, writeFileSync } from 'node:fs'
 import { randomBytes } from 'node:crypto'
 import { tmpdir } from 'node:os'
 import { join } from 'node:path'
@@ -28,6 +28,7 @@ export default async function setup(project: TestProject) {
   await migrateDatabase(addresses.DATABASE_OWNER_URL, new URL(addresses.DATABASE_URL).username)
   const sessionPassword = randomBytes(32).toString('base64url')
   const storageDir = join(folder, 'files')
+  mkdirSync(storageDir)
   const logFile = join(folder, 'server.log')
   writeFileSync(logFile, '')
   const server = await startServer({

@@ -1,8 +1,9 @@
 import { connect } from 'node:net'
-import { beforeAll, describe, expect, inject, it } from 'vitest'
+import { beforeAll, describe, expect, it } from 'vitest'
 import { policy } from './policy'
 import { Client } from './support/client'
 import { hashOfAllRows } from './support/database'
+import { findLogLine } from './support/log'
 import { makers, randomIds, smallSet, type ObjectIds } from './support/objects'
 import { buildWorld, type World } from './support/people'
 import { listRouteFiles, pathOf, toRoute } from './support/routes'
@@ -204,11 +205,8 @@ describe('answers', () => {
   it('to anything wrong name the request that the log names', async () => {
     const answer = await world.people.owner.client.get('/api/groups/nothing')
     expect(answer.json.requestId).toBe(answer.headers.get('x-request-id'))
-    const { readFileSync } = await import('node:fs')
-    const line = readFileSync(inject('logFile'), 'utf8')
-      .split('\n')
-      .find((text) => text.includes(answer.json.requestId))
-    expect(JSON.parse(line ?? '{}')).toMatchObject({ event: 'request.refused', status: 404, code: 'request/not-found' })
+    const line = await findLogLine(answer.json.requestId)
+    expect(JSON.parse(line)).toMatchObject({ event: 'request.refused', status: 404, code: 'request/not-found' })
   })
 
   it('do not take the id of a request from outside', async () => {

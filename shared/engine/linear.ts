@@ -23,6 +23,8 @@ import { foldedWings, type WingMoments } from './folded-wings'
 import type { SpectralGrid } from './grid'
 import type { ComplexSeries, LineModel } from './types'
 
+const NEGLIGIBLE_DECAY = 40
+
 export interface LinearSpectra {
   energiesMeV: Float64Array
   absorption: Float64Array
@@ -33,7 +35,7 @@ export interface LinearSpectra {
   foldedShare: number
 }
 
-/** a(t_j) = exp(-g0 - gam t - sig^2 t^2/2) on t_j = j stepPs. Overwrites nothing; exponents below -700 give 0. */
+/** a(t_j) = exp(-g0 - gam t - sig^2 t^2/2) on t_j = j stepPs. Zero once gam t + sig^2 t^2/2 passes 40. */
 export const linearSignal = (model: LineModel, broadening: ComplexSeries, stepPs: number): ComplexSeries => {
   const gam = homogeneousRate(model)
   const sig = ensembleSigma(model)
@@ -42,7 +44,10 @@ export const linearSignal = (model: LineModel, broadening: ComplexSeries, stepPs
   const im = new Float64Array(samples)
   for (let j = 0; j < samples; j++) {
     const t = j * stepPs
-    const size = Math.exp(-broadening.re[j]! - gam * t - 0.5 * sig * sig * t * t)
+    const decay = gam * t + 0.5 * sig * sig * t * t
+    // Re g0 >= 0: from here on the signal is below 5e-18, and zero for every sum.
+    if (decay > NEGLIGIBLE_DECAY) break
+    const size = Math.exp(-broadening.re[j]! - decay)
     const phase = -broadening.im[j]!
     re[j] = size * Math.cos(phase)
     im[j] = size * Math.sin(phase)

@@ -16,6 +16,7 @@ const nodeProject = (name: string, order: number, test: object = {}): TestProjec
     name,
     include: [`tests/${name}/**/*.spec.ts`],
     environment: 'node',
+    setupFiles: ['tests/setup/properties.ts'],
     // Hang guards only; speed is judged by `npm run bench`.
     testTimeout: 60_000,
     hookTimeout: 120_000,

@@ -176,7 +176,7 @@ const drill = async (round: number) => {
   await bench.close()
   await trial.remove()
   print(`kills, round ${round}, seed ${seed + round}`, { ...state, lost, hits, settledMs })
-  return { ...state, lost, hits }
+  return { ...state, attempts: state.attempts ?? 0, lost, hits }
 }
 
 describe('kill -9 of workers, server and PostgreSQL', () => {

@@ -45,7 +45,8 @@ describe('fft', () => {
         const before = re.slice()
         forwardFft(re, im)
         inverseFft(re, im)
-        expect(largest(re.map((value, j) => Math.abs(value / n - before[j]!)))).toBeLessThan(2e-15)
+        // Up to 30 stages round; 10 epsilon (2.2e-15) is the most that was seen, and 16 leave room for rarer draws.
+        expect(largest(re.map((value, j) => Math.abs(value / n - before[j]!)))).toBeLessThan(16 * Number.EPSILON)
       }),
       { numRuns: 30 },
     )

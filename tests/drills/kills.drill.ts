@@ -3,7 +3,7 @@ import { chmodSync, mkdtempSync, readFileSync, rmSync } from 'node:fs'
 import { tmpdir } from 'node:os'
 import { join } from 'node:path'
 import { setTimeout as pause } from 'node:timers/promises'
-import { afterAll, describe, expect, it } from 'vitest'
+import { afterAll, afterEach, describe, expect, it } from 'vitest'
 import { start, status, stop } from '../../scripts/pg.mjs'
 import { closePool } from '../../server/database/client'
 import { stopListening } from '../../server/database/notifications'
@@ -28,6 +28,11 @@ const folder = mkdtempSync(join(tmpdir(), 'linewright-drill-'))
 // PostgreSQL does not run as root: its own account must be able to enter.
 chmodSync(folder, 0o755)
 process.env.PG_DIR = join(folder, 'cluster')
+
+/** Ends what the drill keeps alive, also when it fails half way. */
+let endAll = (): void => undefined
+
+afterEach(() => endAll())
 
 afterAll(() => {
   stop()
@@ -98,6 +103,11 @@ const drill = async (round: number) => {
       if (server) await exited(server)
     }
   }
+  endAll = () => {
+    over = true
+    for (const worker of workers) worker?.kill('SIGKILL')
+    server?.process.kill('SIGKILL')
+  }
   // Queued before anybody works, so that the kills fall into the work.
   for (let index = 0; index < runs; index++) {
     const setId = await bench.addTrial(groupId, userId, `hold ${Math.round(300 + 600 * random())}`)
@@ -166,9 +176,7 @@ const drill = async (round: number) => {
   for (const runId of await failedRuns(groupId)) await retryRun({ groupId, userId, runId })
   while ((state = await look()).done !== runs && performance.now() - lastKill < settleMs) await pause(250)
   const settledMs = Math.round(performance.now() - lastKill)
-  over = true
-  for (const worker of workers) worker.kill('SIGKILL')
-  server?.process.kill('SIGKILL')
+  endAll()
   await Promise.all(keeping)
   await stopQueue()
   await stopListening()

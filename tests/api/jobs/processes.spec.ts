@@ -242,7 +242,8 @@ describe('an outage of the database', () => {
     const begun = performance.now()
     const refused = await reader.client.get(`/api/groups/${group}/runs`)
     expect([refused.status, refused.json.code]).toEqual([503, 'service/unavailable'])
-    expect(performance.now() - begun).toBeLessThan(6000)
+    // Hang guards at ten times the figure: a refusal takes half a second, a recovery up to five.
+    expect(performance.now() - begun).toBeLessThan(20_000)
     // Asked for and computed by others, while this server hears nothing.
     start()
     const run = await createRun({ groupId: group, userId: reader.id, setId, version: 1 })
@@ -257,7 +258,7 @@ describe('an outage of the database', () => {
       async () => (await reader.client.get(`/api/groups/${group}/runs`)).status,
       (status) => status === 200,
     )
-    expect(performance.now() - mended).toBeLessThan(5000)
+    expect(performance.now() - mended).toBeLessThan(50_000)
     await until(
       () => stream.messages.map(({ id, state }) => `${id} ${state}`),
       (heard) => heard.includes(`${run.id} done`),
@@ -285,6 +286,11 @@ describe('several processes', () => {
     start()
     start()
     await startWeb({ NUXT_QUEUE: 'none' })
+    // Both at work before the first run: else the first one up may have done all of them.
+    await until(
+      () => started.filter((worker) => worker.output().includes('queue.working')).length,
+      (working) => working >= 2,
+    )
     const runs = await Promise.all(Array.from({ length: 30 }, (_, index) => request(`hold ${index}`)))
     for (const run of runs) expect(await ended(run.id)).toMatchObject({ state: 'done', attempt: 1 })
     expect(await countResults()).toBe(30)

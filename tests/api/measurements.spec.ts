@@ -119,8 +119,8 @@ describe('a measurement that cannot be made', () => {
     ['a temperature below 0 K', { temperatureK: -1 }, ['temperatureK']],
     ['a temperature as text', { temperatureK: '4' }, ['temperatureK']],
     ['a file id that is none', { fileId: '../x' }, ['fileId']],
-    ['a mark that only the server sets', { isInvented: true }, []],
-    ['a group of its own', { groupId: randomUUID() }, []],
+    ['a mark that only the server sets', { isInvented: true }, ['isInvented']],
+    ['a group of its own', { groupId: randomUUID() }, ['groupId']],
   ])('with %s is refused with its place', async (_what, changes, place) => {
     const answer = await refuse(changes)
     expect(answer.status, answer.text).toBe(422)

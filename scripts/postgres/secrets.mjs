@@ -9,6 +9,8 @@ export const keepSecret = (file) => {
     if (kept.length >= 32) return kept
     throw new Error(`${file} holds ${kept.length} characters; expected a secret of at least 32`)
   }
+  // Only the folder of secrets is closed to others: the one above may hold the cluster, which another account enters.
+  mkdirSync(dirname(dirname(file)), { recursive: true })
   mkdirSync(dirname(file), { recursive: true, mode: 0o700 })
   const made = randomBytes(32).toString('base64url')
   writeFileSync(file, `${made}\n`, { mode: 0o600, flag: 'wx' })

@@ -34,6 +34,8 @@ const rememberedRuns = 5000
 const streams = new Set<Stream>()
 let offs: (() => void)[] = []
 let checking: NodeJS.Timeout | undefined
+/** Whether the pages still have to be told what was said while the line was down. */
+let isOwing = false
 
 const offer = (stream: Stream, event: RunEvent, at: number): void => {
   const before = stream.sent.get(event.id)
@@ -82,20 +84,42 @@ const check = async (): Promise<void> => {
   for (const stream of open) if (!keys.has(`${stream.sessionId} ${stream.groupId}`)) stream.sink.close()
 }
 
+/** The line may be back before the pool is: what could not be told is owed until it has been told. */
+const settle = async (): Promise<void> => {
+  if (!isOwing) return
+  isOwing = false
+  try {
+    await catchUp()
+  } catch (error) {
+    isOwing = true
+    throw error
+  }
+}
+
 const quietly = (what: string, work: () => Promise<void>) => () => {
   work().catch((error: unknown) => logger.warn({ event: what, reason: error instanceof Error ? error.message : error }))
 }
 
 const watch = (): void => {
   if (checking) return
-  offs = [onNotice('run', onRun), onNotice('reconnected', quietly('stream.catch-up-failed', catchUp))]
-  checking = setInterval(quietly('stream.check-failed', check), checkMs)
+  const settleQuietly = quietly('stream.catch-up-failed', settle)
+  const onReconnected = () => {
+    isOwing = true
+    settleQuietly()
+  }
+  offs = [onNotice('run', onRun), onNotice('reconnected', onReconnected)]
+  const checkQuietly = quietly('stream.check-failed', check)
+  checking = setInterval(() => {
+    checkQuietly()
+    settleQuietly()
+  }, checkMs)
 }
 
 const unwatch = (): void => {
   if (streams.size > 0) return
   clearInterval(checking)
   checking = undefined
+  isOwing = false
   for (const off of offs) off()
   offs = []
 }

@@ -3,7 +3,7 @@ import { join } from 'node:path'
 import type { Browser, Page } from 'playwright-core'
 import { signIn } from './journey'
 import { launchBrowser, openPage } from './launch'
-import { findPlace, pages, type PageEntry, type Place } from './pages'
+import { findPlace, pages, unexpected, type PageEntry, type Place } from './pages'
 
 const widths = [
   { width: 1440, height: 900 },
@@ -44,8 +44,9 @@ const takeSeries = async (
   const member = await openPage(browser, { baseUrl, colorScheme, ...size })
   await signIn(member.page, account.email, account.password)
   const place = await findPlace(member.page, 'Sample A1 (invented)', 600_000)
+  const found: string[] = []
   for (const entry of pages) {
-    const { page } = entry.guest ? guest : member
+    const { page, complaints } = entry.guest ? guest : member
     await settle(page, entry, place)
     await page.screenshot({ path: join(target, `${entry.name}.png`), fullPage: size.width < 1000 })
     const isForReadme =
@@ -54,11 +55,11 @@ const takeSeries = async (
       await mkdir(request.readmeFolder ?? '', { recursive: true })
       await page.screenshot({ path: join(request.readmeFolder ?? '', `${entry.name}.jpg`), type: 'jpeg', quality: 72 })
     }
+    found.push(...unexpected(complaints, entry))
   }
-  const complaints = [...guest.complaints, ...member.complaints].filter((text) => !text.includes('status of 404'))
   await guest.close()
   await member.close()
-  return complaints
+  return found
 }
 
 /** Pictures of every page at both widths in both themes. Answers what the console complained about. */
